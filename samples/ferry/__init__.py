@@ -1,0 +1,1 @@
+"""The planning office of a small ferry line."""

@@ -1,0 +1,51 @@
+"""Progress on standard error, where a person is watching."""
+
+from __future__ import annotations
+
+import sys
+import time
+from collections.abc import Iterator, Mapping
+from contextlib import contextmanager
+
+from steplaw.audit import Report
+
+
+@contextmanager
+def progress() -> Iterator[Report | None]:
+    """Show what is being done and the time left; nothing where standard error is no terminal.
+
+    Yields
+    ------
+    callable or None
+        The reporter that `steplaw.audit.run` takes.
+    """
+    if not sys.stderr.isatty():
+        yield None
+        return
+    from rich.console import Console
+    from rich.progress import BarColumn, Progress, TextColumn
+
+    bar = Progress(
+        TextColumn("{task.description}"),
+        BarColumn(bar_width=24),
+        TextColumn("{task.fields[left]}"),
+        console=Console(stderr=True),
+        transient=True,
+    )
+    started = time.monotonic()
+    with bar:
+        task = bar.add_task("loading the subject", total=None, left="")
+
+        def report(what: str, at: Mapping[str, int], done: int, rest: int | None) -> None:
+            size = ", ".join(f"{name}={value}" for name, value in at.items())
+            text = f"{what} at {size}" if what == "counting" else f"{what} up to {size}"
+            total = None if rest is None else max(done + rest, 1)
+            bar.update(task, description=text, completed=done, total=total, left=_left(done, rest))
+
+        def _left(done: int, rest: int | None) -> str:
+            if not done or not rest:
+                return ""
+            seconds = (time.monotonic() - started) * rest / done
+            return f"about {seconds:.0f} s left, by the growth so far"
+
+        yield report

@@ -1,0 +1,256 @@
+"""The laws of a sweep, as the parts of the audit record."""
+
+from __future__ import annotations
+
+import linecache
+from collections.abc import Callable, Mapping, Sequence
+from fractions import Fraction
+from typing import Any
+
+from steplaw import series
+from steplaw.errors import CallError
+from steplaw.host.runner import Run
+from steplaw.law import find_law
+from steplaw.law.model import Law, Observation
+from steplaw.sweep import Sweep
+
+#: Lines outside the subject's file are listed from this share of the steps on.
+SHARE_LISTED = 0.01
+
+
+class Findings:
+    """The laws of a sweep.
+
+    Parameters
+    ----------
+    sweep : Sweep
+        The runs.
+    figure : str
+        The figure that the study is about.
+    loaded : mapping
+        The subject, as the host describes it.
+    changed : set of (str, int)
+        Lines whose counts differ between equal runs.
+    """
+
+    def __init__(
+        self,
+        sweep: Sweep,
+        figure: str,
+        loaded: Mapping[str, Any],
+        changed: set[tuple[str, int]],
+    ) -> None:
+        self.sweep = sweep
+        self.name = figure
+        self.loaded = loaded
+        self.changed = changed
+        self._known: dict[tuple[Observation, ...], Law] = {}
+        self._lines = series.of_many(sweep, _line_values)
+        self._functions = series.of_many(sweep, _function_values)
+        self._check_line()
+        self._largest = max(sweep.runs, default=None)
+        self._total = self._at_largest(series.of(sweep, _steps))
+        self.figure_law = self._figure_law()
+
+    def _law(self, observations: Sequence[Observation], changed: bool = False) -> Law:
+        if changed:
+            return Law(None, None, "open", note="the count changes between equal runs")
+        if not observations:
+            return Law(None, None, "open", note="nothing was run to its end")
+        key = tuple(observations)
+        law = self._known.get(key)
+        if law is None:
+            law = self._known[key] = find_law(observations, self.sweep.names)
+        return law
+
+    def _check_line(self) -> None:
+        if not self.name.startswith("line:") or not self.sweep.runs:
+            return
+        line, file = int(self.name[5:]), self.loaded["file"]
+        if (file, line, "frequency") not in self._lines:
+            ran = sorted({k[1] for k in self._lines if k[0] == file})
+            raise CallError(
+                f"line {line} of {file} never ran",
+                "lines that did: " + ", ".join(map(str, ran)),
+            )
+
+    def _read(self) -> Callable[[Run], int]:
+        if self.name == "steps":
+            return _steps
+        if self.name.startswith("line:"):
+            key = (self.loaded["file"], int(self.name[5:]))
+            return lambda run: series.lines(run).get(key, (0, 0))[0]
+        return lambda run: run.tally.operations.get(self.name, 0)
+
+    def _figure_law(self) -> Law:
+        changed = bool(self.changed)
+        if self.name.startswith("line:"):
+            changed = (self.loaded["file"], int(self.name[5:])) in self.changed
+        return self._law(series.of(self.sweep, self._read()), changed)
+
+    def figure(self) -> dict[str, Any]:
+        """Give the record's ``figure``."""
+        read = self._read()
+        observations = series.of(self.sweep, read)
+        fixed = all(o.variance == 0 for o in observations)
+        by_law: dict[str, Any] = {"least": None, "most": None, "variance": None}
+        if (self.sweep.whole or fixed) and observations and not self.changed:
+            by_law = {
+                "least": self._law(_single(observations, lambda o: Fraction(o.least))).as_json(),
+                "most": self._law(_single(observations, lambda o: Fraction(o.most))).as_json(),
+                "variance": self._law(_single(observations, lambda o: o.variance)).as_json(),
+            }
+        return {
+            "name": self.name,
+            "law": self.figure_law.as_json(),
+            **by_law,
+            "values": [self._value(o, read) for o in observations],
+        }
+
+    def _value(self, o: Observation, read: Callable[[Run], int]) -> dict[str, Any]:
+        out = {
+            "at": self.sweep.at(o.at),
+            "draws": o.draws,
+            "mean": number(o.value),
+            "variance": number(o.variance),
+            "least": number(o.least),
+            "most": number(o.most),
+        }
+        if self.sweep.whole:
+            runs = self.sweep.runs[o.at]
+            out["witness_least"] = min(runs, key=lambda r: (read(r), r.draw)).input
+            out["witness_most"] = max(runs, key=lambda r: (read(r), -r.draw)).input
+        return out
+
+    def tallies(self) -> list[dict[str, Any]]:
+        """Give the record's ``tallies``."""
+        out = []
+        for runs in self.sweep.runs.values():
+            for run in runs:
+                entry = {
+                    "at": dict(run.at),
+                    "draw": run.draw,
+                    "steps": run.tally.steps,
+                    "own_steps": run.own_steps,
+                    "operations": dict(run.tally.operations),
+                    "native": None,
+                }
+                if self.sweep.whole:
+                    entry["inputs"] = run.times
+                    entry["input"] = run.input
+                out.append(entry)
+        return out
+
+    def laws(self) -> dict[str, Any]:
+        """Give the record's ``laws``."""
+        changed = bool(self.changed)
+        operations = series.of_many(self.sweep, lambda r: r.tally.operations)
+        exact, data = series.parts(self.sweep)
+        split = any(o.value for o in data)
+        return {
+            "steps": self._law(series.of(self.sweep, _steps), changed).as_json(),
+            "native": None,
+            "operations": {
+                name: self._law(operations[name], changed).as_json() for name in sorted(operations)
+            },
+            "parts": {
+                "exact": self._law(exact, changed).as_json() if split else None,
+                "data": self._law(data, changed).as_json() if split else None,
+            },
+        }
+
+    def lines(self) -> list[dict[str, Any]]:
+        """Give the record's ``lines``: those of the subject's file, and costly ones elsewhere."""
+        out = []
+        for file, line in sorted({(k[0], k[1]) for k in self._lines}):
+            steps = self._lines[file, line, "steps"]
+            share = self._share(steps)
+            if file != self.loaded["file"] and share < SHARE_LISTED:
+                continue
+            changed = (file, line) in self.changed
+            out.append(
+                {
+                    "file": file,
+                    "line": line,
+                    "source": linecache.getline(file, line).strip("\n"),
+                    "function": None,
+                    "frequency": self._law(self._lines[file, line, "frequency"], changed).as_json(),
+                    "steps": self._law(steps, changed).as_json(),
+                    "share": share,
+                    "dominant": False,
+                }
+            )
+        if out and self._total:
+            max(out, key=_share_of)["dominant"] = True
+        return out
+
+    def functions(self) -> list[dict[str, Any]]:
+        """Give the record's ``functions``, the costliest at the largest size first."""
+        out = []
+        loaded = self.loaded
+        for file, name, line in {k[:3]: None for k in self._functions}:
+            steps = self._functions[file, name, line, "steps"]
+            changed = any(f == file for f, _ in self.changed)
+            own = (file, line) == (loaded["file"], loaded["line"])
+            out.append(
+                {
+                    "file": file,
+                    "name": name,
+                    "line": line,
+                    "own": own,
+                    "calls": self._law(
+                        self._functions[file, name, line, "calls"], changed
+                    ).as_json(),
+                    "steps": self._law(steps, changed).as_json(),
+                    "share": self._share(steps),
+                }
+            )
+        return sorted(out, key=lambda e: (-float(e["share"]), str(e["file"]), int(e["line"])))
+
+    def _at_largest(self, observations: Sequence[Observation]) -> Fraction:
+        return next((o.value for o in observations if o.at == self._largest), Fraction(0))
+
+    def _share(self, observations: Sequence[Observation]) -> float:
+        if not self._total:
+            return 0.0
+        return round(float(self._at_largest(observations) / self._total), 4)
+
+
+def _share_of(entry: Mapping[str, Any]) -> float:
+    return float(entry["share"])
+
+
+def _steps(run: Run) -> int:
+    return run.tally.steps
+
+
+def _line_values(run: Run) -> dict[tuple[str, int, str], int]:
+    out = {}
+    for (file, line), (frequency, steps) in series.lines(run).items():
+        out[file, line, "frequency"] = frequency
+        out[file, line, "steps"] = steps
+    return out
+
+
+def _function_values(run: Run) -> dict[tuple[str, str, int, str], int]:
+    out = {}
+    for (file, name, line), (calls, steps) in series.functions(run).items():
+        out[file, name, line, "calls"] = calls
+        out[file, name, line, "steps"] = steps
+    return out
+
+
+def _single(
+    observations: Sequence[Observation], read: Callable[[Observation], Fraction]
+) -> list[Observation]:
+    """Give observations of a companion figure, such as the variance, as exact values."""
+    return [
+        Observation(o.at, read(o), o.draws, Fraction(0), read(o), read(o), o.whole)
+        for o in observations
+    ]
+
+
+def number(value: Fraction | int) -> int | str:
+    """Give an exact number as the record holds it: an int, or a string of a fraction."""
+    whole = Fraction(value)
+    return whole.numerator if whole.denominator == 1 else str(whole)

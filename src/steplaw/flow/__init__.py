@@ -1,0 +1,1 @@
+"""The shape of a code object: instructions, blocks, edges, loops."""

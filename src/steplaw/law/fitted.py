@@ -1,0 +1,331 @@
+"""Laws fitted by least squares, chosen by how well they foretell larger sizes."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+from functools import lru_cache
+from typing import TYPE_CHECKING, Any
+
+from steplaw.law.fitbases import Basis, FitTerm, bases
+from steplaw.law.leading import leading_term
+from steplaw.law.model import Law, Observation
+from steplaw.law.snap import Coefficient, plain, recognise, write
+
+if TYPE_CHECKING:
+    import numpy as np
+    from numpy.typing import NDArray
+
+    Array = NDArray[np.float64]
+
+LEAST_SIZES = 6
+ERROR_ALLOWED = 0.05
+SMOOTH = 0.01
+LEAD_SHARE = 0.08
+
+
+@dataclass(frozen=True, slots=True)
+class Data:
+    """Sizes, values and their standard errors, the larger sizes held out."""
+
+    sizes: tuple[int, ...]
+    values: Array
+    noise: Array
+    draws: tuple[int, ...]
+    held: int
+
+    @property
+    def train(self) -> slice:
+        """Give the sizes that a trial fit may see."""
+        return slice(0, len(self.sizes) - self.held)
+
+    @property
+    def weights(self) -> Array:
+        """Give one divided by the expected error of each value."""
+        import numpy as np
+
+        scale = np.maximum(np.abs(self.values), 1.0)
+        octaves = [max(1, n).bit_length() for n in self.sizes]
+        crowd = np.array([octaves.count(o) for o in octaves], dtype=float)
+        error: Array = np.sqrt(self.noise**2 + (SMOOTH * scale) ** 2) * np.sqrt(crowd)
+        return 1.0 / error
+
+    @property
+    def relative_noise(self) -> float:
+        """Give the standard error of the held-out values, relative to them."""
+        import numpy as np
+
+        scale = np.maximum(np.abs(self.values), 1.0)
+        tail = (self.noise / scale)[-self.held :]
+        return float(np.sqrt(np.mean(tail**2)))
+
+
+@dataclass(frozen=True, slots=True)
+class Trial:
+    """A basis with its fit on the smaller sizes and its errors at the larger ones."""
+
+    basis: Basis
+    coefficients: Array
+    held_error: float
+    score: float
+
+
+def fit(observations: Sequence[Observation], name: str) -> Law:
+    """Fit a law of one size.
+
+    Parameters
+    ----------
+    observations : sequence of Observation
+        In increasing order of size.
+    name : str
+        The size name.
+
+    Returns
+    -------
+    Law
+        Graded ``fitted``, or ``open`` with a note that says why.
+
+    Notes
+    -----
+    Every basis is fitted to the smaller sizes alone, weighted by the expected error of each
+    mean, and judged at the larger ones. Among the bases that foretell these about equally well
+    the one with fewest and plainest terms is taken. Where another order of growth does as well
+    with as few terms, nothing is claimed.
+    """
+    data = _prepare(observations)
+    if data is None:
+        return Law(None, None, "open", note=_too_few(observations), names=(name,))
+    trials = _trials(data)
+    noise = data.relative_noise
+    if not trials:
+        return _open(data, name, "no growth in the basis fits the values")
+    best = min(trial.score for trial in trials)
+    allowed = ERROR_ALLOWED + 2 * noise
+    if best > allowed:
+        return _open(
+            data, name,
+            f"nothing fits: the best formula is {100 * best:.1f} % off at the larger sizes held out",
+        )  # fmt: skip
+    tolerance = 1.5 * best + 2 * noise + 0.0005
+    close = [t for t in trials if t.score <= tolerance]
+    chosen = min(close, key=_plainness)
+    rivals = _rivals(chosen, close)
+    if rivals:
+        texts = [leading_text(t, name) for t in (chosen, *rivals)]
+        return _open(
+            data, name,
+            "several orders of growth fit equally well: " + ", ".join(texts)
+            + "; larger sizes would tell them apart",
+        )  # fmt: skip
+    return _law(data, chosen, name)
+
+
+def _prepare(observations: Sequence[Observation]) -> Data | None:
+    import numpy as np
+
+    for least in (4, 2):
+        kept = [o for o in observations if o.at[0] >= least]
+        if len(kept) >= LEAST_SIZES:
+            break
+    else:
+        return None
+    sizes = tuple(o.at[0] for o in kept)
+    values = np.array([_float(o.value) for o in kept])
+    if not np.all(np.isfinite(values)):
+        return None
+    noise = np.array(
+        [0.0 if o.whole else math.sqrt(_float(o.variance) / max(1, o.draws)) for o in kept]
+    )
+    draws = tuple(o.draws for o in kept)
+    held = min(max(2, round(0.3 * len(kept))), len(kept) - 4)
+    return Data(sizes, values, noise, draws, held)
+
+
+def _float(number: Any) -> float:
+    try:
+        return float(number)
+    except OverflowError:
+        return math.inf
+
+
+def _too_few(observations: Sequence[Observation]) -> str:
+    return f"too few sizes: {len(observations)} seen, a fit needs at least {LEAST_SIZES} from 2 on"
+
+
+@lru_cache(maxsize=64)
+def _design(sizes: tuple[int, ...], exponential: bool) -> list[tuple[list[Basis], Any]]:
+    """Give the bases by number of terms, each group with its stacked columns."""
+    import numpy as np
+
+    columns: dict[str, Any] = {}
+
+    def column(term: FitTerm) -> Any:
+        if term.text not in columns:
+            columns[term.text] = np.array([term.at(float(n)) for n in sizes])
+        return columns[term.text]
+
+    groups: dict[int, list[Basis]] = {}
+    for basis in bases(exponential):
+        groups.setdefault(len(basis), []).append(basis)
+    return [
+        (group, np.stack([np.stack([column(t) for t in b], axis=1) for b in group]))
+        for _, group in sorted(groups.items())
+    ]
+
+
+def _trials(data: Data) -> list[Trial]:
+    import numpy as np
+
+    largest = data.sizes[-1]
+    exponential = largest <= 64 and math.log2(1 + abs(data.values[-1])) >= 0.35 * largest
+    weights, scale = data.weights, np.maximum(np.abs(data.values), 1.0)
+    trials: list[Trial] = []
+    for group, stack in _design(data.sizes, exponential):
+        width = stack.shape[2]
+        if len(data.sizes) - data.held < width + 2:
+            continue
+        coefficients = _least_squares(
+            stack[:, data.train], data.values[data.train], weights[data.train]
+        )
+        guess = np.einsum("bnp,bp->bn", stack, coefficients)
+        error = np.abs(guess - data.values) / scale
+        held = error[:, -data.held :]
+        rms_held = np.sqrt(np.mean(held**2, axis=1))
+        inside = np.sqrt(np.average(error[:, data.train] ** 2, axis=1, weights=_octave(data)))
+        score = np.sqrt((2 * rms_held**2 + inside**2) / 3)
+        share = coefficients[:, 0] * stack[:, -1, 0] / scale[-1]
+        for k, basis in enumerate(group):
+            if share[k] >= LEAD_SHARE and math.isfinite(score[k]):
+                trials.append(Trial(basis, coefficients[k], float(held[k].max()), float(score[k])))
+    return trials
+
+
+def _octave(data: Data) -> Array:
+    import numpy as np
+
+    octaves = [max(1, n).bit_length() for n in data.sizes[data.train]]
+    return np.array([1.0 / octaves.count(o) for o in octaves])
+
+
+def _least_squares(stack: Any, values: Array, weights: Array) -> Any:
+    """Solve many small weighted least squares problems at once, by QR."""
+    import numpy as np
+
+    scaled = stack * weights[None, :, None]
+    norms = np.linalg.norm(scaled, axis=1)
+    norms[norms == 0] = 1.0
+    q, r = np.linalg.qr(scaled / norms[:, None, :])
+    diagonal = np.abs(np.diagonal(r, axis1=1, axis2=2)).min(axis=1)
+    right = np.einsum("bnp,n->bp", q, values * weights)
+    r[diagonal < 1e-9] = np.eye(stack.shape[2])
+    right[diagonal < 1e-9] = np.nan
+    return np.linalg.solve(r, right[:, :, None])[:, :, 0] / norms
+
+
+def _plainness(trial: Trial) -> tuple[int, int, float]:
+    return len(trial.basis), sum(t.oddity for t in trial.basis), trial.score
+
+
+def _rivals(chosen: Trial, close: Sequence[Trial]) -> list[Trial]:
+    """Give the best trial of every other order that does as well with as few terms."""
+    lead = chosen.basis[0]
+    by_order: dict[str, Trial] = {}
+    for trial in sorted(close, key=lambda t: t.score):
+        other = trial.basis[0]
+        if other.growth == lead.growth or len(trial.basis) > len(chosen.basis):
+            continue
+        if other.oddity > lead.oddity + 1 and trial.score > 0.6 * chosen.score:
+            continue
+        by_order.setdefault(other.text, trial)
+    return list(by_order.values())[:4]
+
+
+def leading_text(trial: Trial, name: str) -> str:
+    """Write the leading term of a trial without its coefficient."""
+    return trial.basis[0].text.format(n=name) or "a constant"
+
+
+def _open(data: Data, name: str, why: str) -> Law:
+    note = f"{why} (sizes {data.sizes[0]} to {data.sizes[-1]})"
+    return Law(None, None, "open", note=note, names=(name,), details={"data": _evidence(data)})
+
+
+def _evidence(data: Data) -> dict[str, Any]:
+    return {
+        "sizes": len(data.sizes),
+        "held_out": data.held,
+        "draws": sum(data.draws),
+        "relative_noise": data.relative_noise,
+    }
+
+
+def _law(data: Data, chosen: Trial, name: str) -> Law:
+    found = _intervals(data, chosen)
+    found = recognise(found, data, chosen.held_error)
+    formula = write(found, name)
+    note = (
+        f"fitted on sizes {data.sizes[0]} to {data.sizes[-1 - data.held]}, "
+        f"tested up to {name} = {data.sizes[-1]}"
+    )
+    if all(n & (n - 1) == 0 for n in data.sizes):
+        note += "; every size is a power of two"
+    return Law(
+        formula,
+        leading_term(formula, (name,)),
+        "fitted",
+        holds_from=data.sizes[0],
+        settled_by=data.sizes[: -data.held],
+        checked_at=data.sizes[-data.held :],
+        error=chosen.held_error,
+        note=note,
+        details={"terms": [plain(c, name) for c in found], "data": _evidence(data)},
+        names=(name,),
+    )
+
+
+def _intervals(data: Data, chosen: Trial) -> list[Coefficient]:
+    """Fit the chosen basis to all sizes; the interval also spans the fit on the smaller ones."""
+    import numpy as np
+
+    matrix = np.stack([[t.at(float(n)) for t in chosen.basis] for n in data.sizes])
+    weights = data.weights
+    solved = _least_squares(matrix[None], data.values, weights)[0]
+    rest = (matrix @ solved - data.values) * weights
+    freedom = len(data.sizes) - len(chosen.basis)
+    variance = float(rest @ rest) / freedom
+    floor = _noise_floor(data)
+    scaled = matrix * weights[:, None]
+    spread = np.linalg.pinv(scaled.T @ scaled)
+    quantile = student(freedom)
+    out = []
+    for k, term in enumerate(chosen.basis):
+        half = quantile * math.sqrt(max(variance, floor) * max(0.0, float(spread[k, k])))
+        low = min(float(solved[k]) - half, float(chosen.coefficients[k]))
+        high = max(float(solved[k]) + half, float(chosen.coefficients[k]))
+        out.append(Coefficient(term, float(solved[k]), low, high))
+    return out
+
+
+def _noise_floor(data: Data) -> float:
+    """Give the residual variance that the spread of the draws alone would cause."""
+    import numpy as np
+
+    return float(np.mean((data.noise * data.weights) ** 2))
+
+
+def student(freedom: int) -> float:
+    """Give the two-sided 95 % point of Student's distribution.
+
+    Notes
+    -----
+    By the expansion of Abramowitz & Stegun, Handbook of Mathematical Functions, 26.7.5, with
+    the exact points for one and two degrees of freedom.
+    """
+    if freedom <= 2:
+        return {1: 12.706, 2: 4.303}.get(freedom, math.inf)
+    x = 1.959963985
+    g1 = (x**3 + x) / 4
+    g2 = (5 * x**5 + 16 * x**3 + 3 * x) / 96
+    g3 = (3 * x**7 + 19 * x**5 + 17 * x**3 - 15 * x) / 384
+    return x + g1 / freedom + g2 / freedom**2 + g3 / freedom**3

@@ -1,0 +1,180 @@
+"""A study: subject, feed, sizes and settings of one audit."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable, Mapping, Sequence
+from dataclasses import dataclass, field
+from pathlib import Path
+from typing import Any
+
+from steplaw import feed as feeds
+from steplaw import subject as subjects
+from steplaw.errors import CallError
+from steplaw.feed import FeedSpec
+from steplaw.host.limits import Limits
+from steplaw.sizes import SizePlan, plan
+from steplaw.subject import SubjectRef
+from steplaw.tally.classes import CLASSES
+
+DRAWS = 5
+
+
+@dataclass(frozen=True, slots=True)
+class Study:
+    """Everything that decides an audit.
+
+    Parameters
+    ----------
+    subject : SubjectRef
+        The function.
+    feed : FeedSpec or None
+        What builds its arguments; None makes them from its type hints.
+    plan : SizePlan
+        The sizes, in order.
+    asked : tuple of mapping
+        Those that a person named.
+    draws : int
+        Inputs at each size where they differ from draw to draw.
+    figure : str
+        ``steps``, an operation class, or ``line:N``.
+    clock : bool
+        Whether the clock check is made.
+    limits : Limits
+        Limits on one run.
+    again : str
+        The command that runs the study again.
+    """
+
+    subject: SubjectRef
+    feed: FeedSpec | None
+    plan: SizePlan
+    asked: tuple[Mapping[str, int], ...] = ()
+    draws: int = DRAWS
+    figure: str = "steps"
+    clock: bool = True
+    limits: Limits = field(default_factory=Limits)
+    again: str = ""
+
+    @property
+    def every(self) -> bool:
+        """Whether every input of each size is run."""
+        return self.feed is not None and self.feed.kind == "every"
+
+
+def make_study(
+    subject: str | Callable[..., Any],
+    *,
+    feed: str | Callable[..., Any] | None = None,
+    every: str | None = None,
+    sizes: str | Sequence[str] | Iterable[int] | Mapping[str, Iterable[int]] | None = None,
+    only_sizes: bool = False,
+    draws: int = DRAWS,
+    figure: str = "steps",
+    clock: bool = True,
+    limit_seconds: float = 60.0,
+    limit_memory: int = 4096,
+    again: str = "",
+) -> Study:
+    """Check what was asked for and make a study of it.
+
+    Parameters
+    ----------
+    subject : str or callable
+        As in ``steplaw audit``, or the function itself.
+    feed : str or callable, optional
+        An expression, ``FILE.py:FUNCTION``, or a function of the size names and ``rng``.
+    every : str, optional
+        An expression that gives every input of a size.
+    sizes : str, sequence, or mapping, optional
+        As ``--sizes``, or the numbers themselves.
+    only_sizes : bool
+        Run these sizes alone.
+    draws : int
+        Inputs at each size where they differ from draw to draw.
+    figure : str
+        The figure that the study is about.
+    clock : bool
+        Whether to hold the law against the clock.
+    limit_seconds : float
+        Wall-clock time of one run, in seconds.
+    limit_memory : int
+        Memory that one run may take, in megabytes.
+    again : str
+        The command that runs the study again.
+
+    Raises
+    ------
+    CallError
+        If any of it cannot be used.
+    """
+    if feed is not None and every is not None:
+        raise CallError("--feed and --every cannot be given together", "leave one of them out")
+    if draws < 1:
+        raise CallError(f"--draws {draws} makes no input", "give 1 or more")
+    if limit_seconds <= 0 or limit_memory <= 0:
+        raise CallError("a limit must be above 0", "as in --limit-seconds 10 --limit-memory 2048")
+    check_figure(figure)
+    asked = plan(sizes, True).points if _names_numbers(sizes) else ()
+    return Study(
+        subject=subject_ref(subject),
+        feed=feed_spec(feed, every),
+        plan=plan(sizes, only_sizes),
+        asked=tuple(asked),
+        draws=draws,
+        figure=figure,
+        clock=clock,
+        limits=Limits(float(limit_seconds), int(limit_memory)),
+        again=again,
+    )
+
+
+def _names_numbers(sizes: Any) -> bool:
+    if sizes is None:
+        return False
+    try:
+        plan(sizes, True)
+    except CallError:
+        plan(sizes, False)
+        return False
+    return True
+
+
+def subject_ref(subject: str | Callable[..., Any]) -> SubjectRef:
+    """Give the reference of a subject named or at hand."""
+    if isinstance(subject, str):
+        return subjects.parse(subject)
+    return subjects.from_function(subject).ref
+
+
+def feed_spec(feed: str | Callable[..., Any] | None, every: str | None) -> FeedSpec | None:
+    """Give the feed that was asked for, None for one from type hints."""
+    if every is not None:
+        return feeds.parse_every(every)
+    if feed is None:
+        return None
+    if isinstance(feed, str):
+        return feeds.parse_feed(feed)
+    try:
+        found = subjects.from_function(feed)
+    except CallError:
+        return feeds.from_callable(feed)
+    return FeedSpec("function", f"{Path(found.file)}:{found.name}")
+
+
+def check_figure(figure: str) -> None:
+    """Refuse a figure that there is not.
+
+    Raises
+    ------
+    CallError
+        With the figures that there are.
+    """
+    if figure == "steps" or figure in CLASSES:
+        return
+    kind, _, number = figure.partition(":")
+    if kind == "line" and number.isdigit():
+        return
+    raise CallError(
+        f"there is no figure '{figure}'",
+        "figures are steps, line:N (N a line number), " + ", ".join(CLASSES),
+    )
