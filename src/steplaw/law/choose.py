@@ -8,7 +8,7 @@ from fractions import Fraction
 from functools import lru_cache
 from math import log2
 
-from steplaw.law.exactmath import PRIME, Relations, bits, relations, residue, solve
+from steplaw.law.exactmath import PRIME, Relations, bits, bits_together, relations, residue, solve
 from steplaw.law.terms import Form, Term
 
 LEAST_CHECKS = 3
@@ -127,6 +127,8 @@ def search(
     residues = [residue(v) for v in values]
     best: Found | None = None
     for rank, form in enumerate(forms):
+        if best is not None and len(form.terms) > len(best.form.terms) + 1:
+            break
         first = _agreement(shared, form, residues)
         if first is None:
             continue
@@ -134,7 +136,7 @@ def search(
         if found is None or (best is not None and found.length >= best.length):
             continue
         best = found
-        if found.first == shared.start(form) and found.first <= 1:
+        if form.family == "polynomial" and not found.first:
             break
     return best
 
@@ -177,7 +179,7 @@ def _confirm(
         ):
             return None
     outside = range(shared.start(form), first)
-    cost = sum(bits(c) for c in coefficients) + choice
+    cost = bits_together(coefficients) + choice
     gain = sum(_surprise(values[k]) for k in checked)
     if not _enough(shared, form, coefficients, settled, checked, len(outside)):
         return None
@@ -188,7 +190,7 @@ def _confirm(
 
 
 def _surprise(value: Fraction) -> float:
-    return bits(value.numerator) - 0.5 if value else 0.75
+    return bits(value) - 0.5 if value else 0.75
 
 
 def _enough(

@@ -161,7 +161,7 @@ def _rounded(name: str, arg: ast.expr, env: Mapping[str, int]) -> int:
             whole = special.arrangements(_whole(evaluate(inner, env)))
             return whole if name == "floor" else whole + 1
     number = evaluate(arg, env)
-    rounding = math.floor if name == "floor" else math.ceil
+    rounding: Callable[[Any], int] = math.floor if name == "floor" else math.ceil
     if not isinstance(number, float):
         return rounding(number)
     near = round(number)
@@ -209,6 +209,7 @@ FUNCTIONS: dict[str, Callable[..., Any]] = {
     "catalan": _on_whole(special.catalan),
     "fibonacci": _on_whole(special.fibonacci),
     "lucas": _on_whole(special.lucas),
+    "subfactorial": _on_whole(special.subfactorial),
     "tribonacci": _on_whole(special.tribonacci),
     "Mod": _mod,
     "Max": lambda *numbers: max(numbers, key=as_float),

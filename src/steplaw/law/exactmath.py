@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from fractions import Fraction
-from math import log2
+from math import lcm, log2
 
 PRIME = (1 << 61) - 1
 
@@ -24,6 +24,12 @@ def bits(number: Fraction | int) -> float:
     if not number:
         return 0.5
     return 1 + _log2(1 + abs(number.numerator)) + _log2(number.denominator)
+
+
+def bits_together(numbers: Sequence[Fraction]) -> float:
+    """Give the length in bits of writing rational numbers down over a common denominator."""
+    common = lcm(*(x.denominator for x in numbers))
+    return _log2(common) + sum(bits(int(x * common)) for x in numbers)
 
 
 def _log2(whole: int) -> float:

@@ -416,6 +416,14 @@ def _factorial(node: ast.expr, args: list[ast.expr], sizes: frozenset[str]) -> S
     return Series.of((Atom(_tight(node), ((size, growth),)), 1))
 
 
+def _subfactorial(node: ast.expr, args: list[ast.expr], sizes: frozenset[str]) -> Series:
+    out = _factorial(node, args, sizes) * Series.of((Atom("E", value=math.e), -1))
+    key, _ = out.leading().single()
+    return Series(
+        out.terms, (*out.errors, Growth(tuple((s, FLAT) for s, _ in growth_of(key).by_size)))
+    )
+
+
 def _binomial(node: ast.expr, args: list[ast.expr], sizes: frozenset[str]) -> Series:
     lower = _constant(args[1])
     if isinstance(lower, Fraction) and lower.denominator == 1 and 0 <= lower <= 12:
@@ -434,7 +442,7 @@ def _binomial(node: ast.expr, args: list[ast.expr], sizes: frozenset[str]) -> Se
         exponential = Atom(f"2**{size}", ((size, unit(EXPONENTIAL, math.log(2))),))
         two = (Atom("sqrt(2)", value=math.sqrt(2)), 1)
         out = Series.of((exponential, 1), two, pi, root)
-    elif _linear(args[1], sizes) == (size, ONE, Fraction(0)) and (slope, shift) == (2, 0):
+    elif _linear(args[1], sizes) == (size, ONE, Fraction(0)) and slope == 2 and shift == 0:
         exponential = Atom(f"4**{size}", ((size, unit(EXPONENTIAL, math.log(4))),))
         out = Series.of((exponential, 1), pi, root)
     else:
@@ -460,18 +468,19 @@ def _catalan(node: ast.expr, args: list[ast.expr], sizes: frozenset[str]) -> Ser
 def _golden(by: Fraction, root: bool) -> Rule:
     def rule(node: ast.expr, args: list[ast.expr], sizes: frozenset[str]) -> Series:
         line = _linear(args[0], sizes)
-        if line is None or line[1] != 1:
+        if line is None or line[1].denominator != 1:
             raise TooHard
-        size, _, shift = line
+        size, slope, shift = line
         ratio = CONSTANTS["GoldenRatio"]
-        power = Atom(f"GoldenRatio**{size}", ((size, unit(EXPONENTIAL, math.log(ratio))),))
+        rate = float(slope) * math.log(ratio)
+        exponent = size if slope == 1 else f"({slope}*{size})"
+        power = Atom(f"GoldenRatio**{exponent}", ((size, unit(EXPONENTIAL, rate)),))
         factors: list[tuple[Atom, Fraction | int]] = [(power, 1)]
         factors.append((Atom("GoldenRatio", value=ratio), shift))
         if root:
             factors.append((Atom("sqrt(5)", value=math.sqrt(5)), -1))
         out = Series.of(*factors, times=by)
-        lost = Growth(((size, unit(EXPONENTIAL, -math.log(ratio))),))
-        return Series(out.terms, (lost,))
+        return Series(out.terms, (Growth(((size, unit(EXPONENTIAL, -rate)),)),))
 
     return rule
 
@@ -525,6 +534,7 @@ RULES: dict[str, Rule] = {
     "catalan": _catalan,
     "fibonacci": _golden(ONE, True),
     "lucas": _golden(ONE, False),
+    "subfactorial": _subfactorial,
     "tribonacci": _tribonacci,
     "Max": _extreme,
     "Min": _extreme,

@@ -6,14 +6,24 @@ from collections.abc import Sequence
 from fractions import Fraction
 from functools import lru_cache
 
+from steplaw.law.dyadic import dyadic_forms
+from steplaw.law.exactmath import bits
+from steplaw.law.factorials import factorial_forms, factorial_mean_forms
+from steplaw.law.harmonic import harmonic_forms
+from steplaw.law.logs import log_forms, root_forms
+from steplaw.law.mixture import mixtures
 from steplaw.law.polynomial import polynomials
+from steplaw.law.powers import power_forms, rational_forms, shrinking_forms
 from steplaw.law.quasi import quasi_polynomials
 from steplaw.law.terms import Form
+
+MOST_EXPONENTIAL = 80
+MOST_HARMONIC = 400
 
 
 def forms_for(
     sizes: tuple[int, ...], values: Sequence[Fraction], exhaustive: bool = False
-) -> list[Form]:
+) -> tuple[Form, ...]:
     """Give the exact forms to try on these values.
 
     Parameters
@@ -27,14 +37,44 @@ def forms_for(
 
     Returns
     -------
-    list of Form
+    tuple of Form
         Fewest coefficients first.
     """
-    return _forms(len(sizes))
+    largest = sizes[-1]
+    parts = any(v.denominator != 1 for v in values)
+    steep = 0 < largest <= MOST_EXPONENTIAL and max(map(bits, values)) >= 0.4 * largest - 6
+    dyadic = all(n > 0 and n & (n - 1) == 0 for n in sizes)
+    kinds = frozenset(
+        kind
+        for kind, wanted in (
+            ("rational", parts),
+            ("harmonic", parts and largest <= MOST_HARMONIC),
+            ("shrinking", parts and largest <= MOST_EXPONENTIAL),
+            ("exponential", steep),
+            ("dyadic", dyadic),
+            ("mixture", exhaustive),
+        )
+        if wanted
+    )
+    return _forms(len(sizes), kinds)
 
 
-@lru_cache(maxsize=64)
-def _forms(count: int) -> list[Form]:
+@lru_cache(maxsize=256)
+def _forms(count: int, kinds: frozenset[str]) -> tuple[Form, ...]:
     most = 2 * count // 3
-    forms = [*polynomials(min(10, most)), *quasi_polynomials(most)]
-    return sorted(forms, key=lambda form: len(form.terms))
+    forms = [*polynomials(min(10, most))]
+    if "dyadic" in kinds:
+        forms += dyadic_forms()
+    else:
+        forms += [*log_forms(), *root_forms(), *quasi_polynomials(most)]
+    if "rational" in kinds:
+        forms += rational_forms()
+    if "harmonic" in kinds:
+        forms += harmonic_forms()
+    if "shrinking" in kinds:
+        forms += [*shrinking_forms(), *factorial_mean_forms()]
+    if "exponential" in kinds:
+        forms += [*power_forms(), *factorial_forms()]
+    if "mixture" in kinds:
+        forms += mixtures(kinds)
+    return tuple(sorted(forms, key=lambda form: len(form.terms)))

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
+from dataclasses import replace
 from fractions import Fraction
 
 from steplaw.law.choose import Found, search
@@ -11,6 +12,7 @@ from steplaw.law.fitted import fit
 from steplaw.law.leading import leading_term
 from steplaw.law.model import Law, Observation
 from steplaw.law.proof import prove
+from steplaw.law.recurrence import recurrence_forms, recurrence_text
 from steplaw.law.shape import Shape
 
 
@@ -95,13 +97,16 @@ def _find_single(
         if proved is not None:
             return proved
     found = search(sizes, values, forms_for(sizes, values, exhaustive))
-    law = fit(merged, name) if found is None else state(found, sizes, name)
-    return _with_note(law, contradiction)
+    if found is None:
+        found = search(sizes, values, recurrence_forms(sizes, values))
+    if found is not None:
+        return _with_note(state(found, sizes, name), contradiction)
+    law = _with_note(fit(merged, name), contradiction)
+    rule = recurrence_text(sizes, values)
+    return _with_note(law, f"at consecutive sizes {rule}" if rule else "")
 
 
 def _with_note(law: Law, note: str) -> Law:
-    from dataclasses import replace
-
     if not note:
         return law
     return replace(law, note=f"{law.note}; {note}" if law.note else note)
@@ -131,7 +136,7 @@ def state(found: Found, sizes: Sequence[int], name: str) -> Law:
 
 def _remarks(found: Found, sizes: Sequence[int], seen: Sequence[int], name: str) -> Iterator[str]:
     yield f"seen up to {name} = {seen[-1]}"
-    if found.first:
+    if found.first and seen[0] > found.form.least:
         yield f"does not hold below {name} = {seen[0]}"
     if found.form.note:
         yield found.form.note

@@ -68,6 +68,7 @@ class Trial:
     basis: Basis
     coefficients: Array
     held_error: float
+    inside: float
     score: float
 
 
@@ -101,16 +102,18 @@ def fit(observations: Sequence[Observation], name: str) -> Law:
     if not trials:
         return _open(data, name, "no growth in the basis fits the values")
     best = min(trial.score for trial in trials)
+    rough = max(noise, min(trial.inside for trial in trials))
     allowed = ERROR_ALLOWED + 2 * noise
     if best > allowed:
         return _open(
             data, name,
-            f"nothing fits: the best formula is {100 * best:.1f} % off at the larger sizes held out",
+            f"nothing fits: the best formula is {100 * best:.1f} % off at larger sizes",
         )  # fmt: skip
     tolerance = 1.5 * best + 2 * noise + 0.0005
     close = [t for t in trials if t.score <= tolerance]
     chosen = min(close, key=_plainness)
-    rivals = _rivals(chosen, close)
+    wide = 1.5 * best + 2 * rough + 0.0005
+    rivals = _rivals(chosen, [t for t in trials if t.score <= wide])
     if rivals:
         texts = [leading_text(t, name) for t in (chosen, *rivals)]
         return _open(
@@ -197,7 +200,8 @@ def _trials(data: Data) -> list[Trial]:
         share = coefficients[:, 0] * stack[:, -1, 0] / scale[-1]
         for k, basis in enumerate(group):
             if share[k] >= LEAD_SHARE and math.isfinite(score[k]):
-                trials.append(Trial(basis, coefficients[k], float(held[k].max()), float(score[k])))
+                errors = float(held[k].max()), float(inside[k]), float(score[k])
+                trials.append(Trial(basis, coefficients[k], *errors))
     return trials
 
 

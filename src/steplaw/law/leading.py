@@ -10,6 +10,7 @@ from functools import lru_cache
 from steplaw.law.evaluate import parse
 from steplaw.law.expand import expand, free_names
 from steplaw.law.growth import (
+    FLAT,
     Atom,
     Coefficient,
     Growth,
@@ -55,9 +56,16 @@ def leading_term(formula: str, names: Sequence[str] | None = None) -> str:
 @lru_cache(maxsize=4096)
 def _leading_text(formula: str, names: tuple[str, ...] | None) -> str:
     try:
-        return write_series(_leading_series(formula, names))
+        series = _leading_series(formula, names)
+        # a formula that only swings is its own leading term
+        return formula if _swings_only(series) else write_series(series)
     except (TooHard, OverflowError, ZeroDivisionError):
         return _by_sympy(formula, names)
+
+
+def _swings_only(series: Series) -> bool:
+    flat = all(v == FLAT for key in series.terms for _, v in growth_of(key).by_size)
+    return flat and any(atom.growth for key in series.terms for atom, _ in key)
 
 
 @lru_cache(maxsize=4096)
@@ -137,9 +145,7 @@ def _single_limit(law: Law | str) -> tuple[Monomial, Fraction | float] | None:
     if formula is None:
         return None
     series = _leading_series(leading_term(formula, names), names)
-    groups: dict[Monomial, list[tuple[Monomial, Coefficient]]] = {}
-    for key, c in series.terms.items():
-        groups.setdefault(tuple(f for f in key if f[0].growth), []).append((key, c))
+    groups = _by_shape(series)
     if len(groups) != 1:
         return None
     shape, members = next(iter(groups.items()))
@@ -151,15 +157,21 @@ def _single_limit(law: Law | str) -> tuple[Monomial, Fraction | float] | None:
     return shape, math.fsum(x for x in numbers if x is not None)
 
 
-def write_series(series: Series) -> str:
-    """Write a sum of monomials, the fastest growing first."""
+def _by_shape(series: Series) -> dict[Monomial, list[tuple[Monomial, Coefficient]]]:
+    """Group the monomials by the factors that depend on a size."""
     groups: dict[Monomial, list[tuple[Monomial, Coefficient]]] = {}
     for key, c in series.terms.items():
         groups.setdefault(tuple(f for f in key if f[0].growth), []).append((key, c))
+    return groups
+
+
+def write_series(series: Series) -> str:
+    """Write a sum of monomials, the fastest growing first."""
+    groups = _by_shape(series)
     ordered = sorted(groups.items(), key=lambda g: _rounded(growth_of(g[0])), reverse=True)
     out = ""
-    for shape, members in ordered:
-        sign, text = _write_group(shape, members)
+    for shape, held in ordered:
+        sign, text = _write_group(shape, held)
         if not out:
             out = f"-{text}" if sign < 0 else text
         else:
@@ -207,7 +219,7 @@ def _join(top: list[str], key: Monomial, bottom: Sequence[str] = ()) -> str:
     if not bottom:
         return upper
     lower = "*".join(bottom)
-    return f"{upper}/({lower})" if len(bottom) > 1 or "*" in lower else f"{upper}/{lower}"
+    return f"{upper}/({lower})" if len(bottom) > 1 else f"{upper}/{lower}"
 
 
 def _merged_golden(key: Monomial) -> Monomial:
@@ -217,7 +229,7 @@ def _merged_golden(key: Monomial) -> Monomial:
     power = next((a for a, e in key if a.text.startswith("GoldenRatio**") and e == 1), None)
     if golden is None or power is None or golden[1].denominator != 1:
         return key
-    size = power.text.removeprefix("GoldenRatio**")
+    size = power.text.removeprefix("GoldenRatio**").strip("()")
     sign = "+" if golden[1] > 0 else "-"
     merged = Atom(f"GoldenRatio**({size} {sign} {abs(golden[1])})", power.growth)
     kept = [f for f in key if f[0] not in (golden[0], power)]

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 from collections import Counter
 from collections.abc import Callable, Sequence
 from fractions import Fraction
@@ -20,6 +21,12 @@ def _residue_term(exponent: int, period: int, rest: int) -> Term:
 
 def _indicator(exponent: int, period: int, rest: int) -> Callable[[int], int]:
     return lambda n: n**exponent if n % period == rest else 0
+
+
+@lru_cache(maxsize=16)
+def floor_term(period: int) -> Term:
+    """Give the term floor(n/period)."""
+    return Term(f"floor({{n}}/{period})", lambda n: n // period)
 
 
 @lru_cache(maxsize=512)
@@ -132,14 +139,49 @@ def _floor_sum(
     floors for k = 0..period-1 add up to n (Hermite's identity), so the commonest weight is
     taken out of all of them.
     """
+    remainder = _remainder(fixed, offsets, period, name)
+    if remainder is not None:
+        return remainder
+    tables = {exponent: _floor_weights(values, period) for exponent, values in offsets.items()}
+    ways = [{}] if not tables else _choices(tables)
+    texts = [_floor_text_sum(fixed, tables, common, period, name) for common in ways]
+    return min(texts, key=len)
+
+
+def _remainder(
+    fixed: dict[int, Fraction], offsets: dict[int, list[Fraction]], period: int, name: str
+) -> str | None:
+    """Write c*Mod(n, period) + constant where nothing else is left."""
+    steps = {b - a for a, b in itertools.pairwise(offsets[0])}
+    others = any(any(offsets[k]) for k in offsets if k) or any(fixed[k] for k in fixed if k)
+    if others or len(steps) != 1:
+        return None
+    return write_sum([(steps.pop(), f"Mod({name}, {period})", ""), (fixed[0], "", "")])
+
+
+def _choices(tables: dict[int, tuple[list[Fraction], Fraction]]) -> list[dict[int, Fraction]]:
+    """Give the ways of taking one weight out of all floors, the commonest and the others."""
+    ways: list[dict[int, Fraction]] = [{}]
+    for exponent, (weights, _) in tables.items():
+        counted = [w for w, _ in Counter(weights).most_common(3)]
+        ways = [{**way, exponent: w} for way in ways for w in counted][:64]
+    return ways
+
+
+def _floor_text_sum(
+    fixed: dict[int, Fraction],
+    tables: dict[int, tuple[list[Fraction], Fraction]],
+    common: dict[int, Fraction],
+    period: int,
+    name: str,
+) -> str:
     total = dict(fixed)
     floors: dict[int, dict[int, Fraction]] = {}
-    for exponent, by_rest in offsets.items():
-        weights, extra = _floor_weights(by_rest, period)
-        common = Counter(weights).most_common(1)[0][0]
-        total[exponent + 1] = total.get(exponent + 1, Fraction(0)) + common
+    for exponent, (weights, extra) in tables.items():
+        taken = common[exponent]
+        total[exponent + 1] = total.get(exponent + 1, Fraction(0)) + taken
         total[exponent] = total.get(exponent, Fraction(0)) + extra
-        floors[exponent] = {k: w - common for k, w in enumerate(weights) if w != common}
+        floors[exponent] = {k: w - taken for k, w in enumerate(weights) if w != taken}
     parts = []
     for exponent in sorted({*total, *(k + 1 for k in floors)}, reverse=True):
         parts.append((total.get(exponent, Fraction(0)), power(exponent, name), ""))

@@ -28,7 +28,7 @@ def harmonic(n: int, order: int = 1) -> Fraction | float:
     """
     if n <= MOST_EXACT:
         return _harmonic_exact(n, order)
-    tail = 1.0 / (2.0 * n**order)
+    tail = 1.0 / (2.0 * float(n) ** order)
     correction = order / (12.0 * float(n) ** (order + 1))
     if order == 1:
         return math.log(n) + 0.5772156649015329 + tail - correction
@@ -36,7 +36,8 @@ def harmonic(n: int, order: int = 1) -> Fraction | float:
     limit = zeta.get(order)
     if limit is None:
         return math.fsum(1.0 / k**order for k in range(1, 2000))
-    return limit - 1.0 / ((order - 1) * float(n) ** (order - 1)) + tail - correction
+    head = 1.0 / ((order - 1) * float(n) ** (order - 1))
+    return limit - head + tail - correction
 
 
 @lru_cache(maxsize=8192)
@@ -84,7 +85,7 @@ def catalan(n: int) -> int:
 def fibonacci(n: int) -> int:
     """Give the Fibonacci number of n by doubling."""
     if n < 0:
-        return (-1) ** (-n + 1) * fibonacci(-n)
+        return fibonacci(-n) if n % 2 else -fibonacci(-n)
     if n > 1_000_000:
         raise OverflowError
     a, b = 0, 1
@@ -108,3 +109,13 @@ def tribonacci(n: int) -> int:
     for _ in range(n):
         a, b, c = b, c, a + b + c
     return a
+
+
+def subfactorial(n: int) -> int:
+    """Give the number of orders of n things that leave none in its place."""
+    if n > 20_000:
+        raise OverflowError
+    total = 1
+    for k in range(1, n + 1):
+        total = total * k + (-1 if k % 2 else 1)
+    return total

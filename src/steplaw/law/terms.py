@@ -51,9 +51,9 @@ class Form:
         Greatest first, in the order of writing.
     write : callable, optional
         A better way of writing it, from the coefficients and the size name.
-    growth : {"slow", "exponential", "rational"}
-        Where it is worth trying: everywhere; only where values grow exponentially or sizes are
-        small; only where some value is not whole.
+    growth : {"slow", "exponential", "rational", "harmonic", "shrinking"}
+        Where it is worth trying: everywhere; where values grow exponentially; where some value
+        is not whole; the same with small sizes; the same with terms that vanish exponentially.
     levels : callable, optional
         A step function of the size; the form is trusted only where it took several values.
     note : str
@@ -97,6 +97,25 @@ def product(*factors: str) -> str:
     return "*".join(factor for factor in factors if factor)
 
 
+def times_power(term: Term, exponent: int) -> Term:
+    """Give a term times a power of the size."""
+    text = product(power(exponent), term.text)
+    return Term(text, lambda n: n**exponent * term.at(n), term.under, term.least)
+
+
+def over(term: Term, exponent: int) -> Term:
+    """Give a term divided by a power of the size."""
+    under = product(power(exponent), term.under)
+    return Term(term.text, lambda n: Fraction(term.at(n)) / n**exponent, under, max(1, term.least))
+
+
+def divided(term: Term, by: Term) -> Term:
+    """Give a term divided by another one."""
+    under = product(term.under, by.text)
+    least = max(term.least, by.least)
+    return Term(term.text, lambda n: Fraction(term.at(n)) / by.at(n), under, least)
+
+
 def write_sum(parts: Sequence[tuple[Fraction, str, str]]) -> str:
     """Write a sum of coefficient, term and divisor in the usual form, leaving zeros out."""
     out = ""
@@ -118,4 +137,5 @@ def write_product(coefficient: Fraction, text: str, under: str = "") -> str:
     upper = product(top, text)
     if not bottom:
         return upper
-    return f"{upper}/({bottom})" if "*" in bottom else f"{upper}/{bottom}"
+    factors = "*" in bottom.replace("**", "")
+    return f"{upper}/({bottom})" if factors else f"{upper}/{bottom}"

@@ -60,7 +60,7 @@ class Probed:
     def __init__(self, original: CodeType, consts: tuple[object, ...]) -> None:
         self.original = original
         self.graph = Blocks(Decoded(original))
-        self.placement = Placement(self.graph, edge_weights(self.graph))
+        self.placement = Placement(self.graph, _costs(self.graph))
         self.left: dict[int, int] = {}
         self.iterators = [repeat(None, FULL) for _ in self.placement.probed]
         writer = _Writer(self, consts)
@@ -79,6 +79,15 @@ class Probed:
     def passes(self) -> list[int]:
         """Give the passes of every probe so far."""
         return [FULL - length_hint(it) for it in self.iterators]
+
+
+def _costs(graph: Blocks) -> list[float]:
+    """Give the likely cost of a probe on every edge: how often it is passed, by its length."""
+    start = graph.of[graph.decoded.ops.index(isa.RESUME)]
+    return [
+        weight * (0.5 if edge.kind == "enter" and edge.target == start else 1.0)
+        for edge, weight in zip(graph.edges, edge_weights(graph), strict=True)
+    ]
 
 
 class _Writer:
