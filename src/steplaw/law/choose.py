@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from fractions import Fraction
@@ -13,6 +14,7 @@ from steplaw.law.terms import Form, Term
 
 LEAST_CHECKS = 3
 MARGIN = 4.0
+TOKEN_BITS = 2.5
 
 
 @dataclass(frozen=True, slots=True)
@@ -97,7 +99,10 @@ def grid(sizes: tuple[int, ...]) -> Grid:
 
 
 def search(
-    sizes: tuple[int, ...], values: Sequence[Fraction], forms: Iterable[Form]
+    sizes: tuple[int, ...],
+    values: Sequence[Fraction],
+    forms: Iterable[Form],
+    before: float = 0.0,
 ) -> Found | None:
     """Find the exact formula that gives the shortest account of the values.
 
@@ -109,6 +114,8 @@ def search(
         Exact values at these sizes.
     forms : iterable of Form
         Fewest coefficients first.
+    before : float
+        Bits that went into the choice of these forms already.
 
     Returns
     -------
@@ -130,15 +137,24 @@ def search(
         if best is not None and len(form.terms) > len(best.form.terms) + 1:
             break
         first = _agreement(shared, form, residues)
-        if first is None:
+        if first is None or (best is not None and _says_no_more(form, first, best)):
             continue
-        found = _confirm(shared, form, values, first, log2(rank + 2))
+        found = _confirm(shared, form, values, first, before + log2(rank + 2))
         if found is None or (best is not None and found.length >= best.length):
             continue
         best = found
         if form.family == "polynomial" and not found.first:
             break
     return best
+
+
+def _says_no_more(form: Form, first: int, best: Found) -> bool:
+    """Say whether a form can only give the formula again that is known already."""
+    if first < best.first:
+        return False
+    keys = {term.key for term in form.terms}
+    pairs = zip(best.coefficients, best.form.terms, strict=True)
+    return all(term.key in keys for c, term in pairs if c)
 
 
 def _agreement(shared: Grid, form: Form, residues: Sequence[int]) -> int | None:
@@ -180,16 +196,40 @@ def _confirm(
             return None
     outside = range(shared.start(form), first)
     cost = bits_together(coefficients) + choice
-    gain = sum(_surprise(values[k]) for k in checked)
+    if form.write is not None:
+        cost = min(cost, text_bits(form.formula(coefficients, "n")))
+    surprise = _length_at if form.family == "polynomial" else _surprise
+    gain = sum(surprise(values, k) for k in checked)
     if not _enough(shared, form, coefficients, settled, checked, len(outside)):
         return None
-    if len(form.terms) > 1 and gain - cost < MARGIN + sum(bits(values[k]) for k in outside):
+    lost = sum(bits(values[k]) for k in outside)
+    if (outside or len(form.terms) > 1) and gain - cost < MARGIN + lost:
         return None
     length = cost + sum(4 + 2 * bits(values[k]) for k in outside)
     return Found(form, tuple(coefficients), settled, checked, length)
 
 
-def _surprise(value: Fraction) -> float:
+def text_bits(formula: str) -> float:
+    """Give the length in bits of a formula, token by token.
+
+    Many coefficients can come to one short formula, as those of ``floor(n**2/12)`` do.
+    """
+    tokens = re.findall(r"\d+|[A-Za-z]\w*|\*\*|[-+*/]", formula)
+    return sum(bits(int(t)) if t.isdigit() else TOKEN_BITS for t in tokens)
+
+
+def _surprise(values: Sequence[Fraction], k: int) -> float:
+    """Give the bits that a value would take by itself, or a whole one as a step from the last."""
+    step = values[k] - values[k - 1] if k else values[k]
+    whole = values[k].denominator == step.denominator == 1
+    return min(_length(values[k]), _length(step)) if whole else _length(values[k])
+
+
+def _length_at(values: Sequence[Fraction], k: int) -> float:
+    return _length(values[k])
+
+
+def _length(value: Fraction) -> float:
     return bits(value) - 0.5 if value else 0.75
 
 

@@ -27,9 +27,12 @@ def bits(number: Fraction | int) -> float:
 
 
 def bits_together(numbers: Sequence[Fraction]) -> float:
-    """Give the length in bits of writing rational numbers down over a common denominator."""
+    """Give the length in bits of writing rational numbers down over a common denominator.
+
+    A zero costs a whole bit: it is a term that the form need not have had.
+    """
     common = lcm(*(x.denominator for x in numbers))
-    return _log2(common) + sum(bits(int(x * common)) for x in numbers)
+    return _log2(common) + sum(max(1.0, bits(int(x * common))) for x in numbers)
 
 
 def _log2(whole: int) -> float:

@@ -19,6 +19,7 @@ from steplaw.law.terms import Form
 
 MOST_EXPONENTIAL = 80
 MOST_HARMONIC = 400
+MOST_PERIODIC = 20
 
 
 def forms_for(
@@ -66,7 +67,7 @@ def _forms(count: int, kinds: frozenset[str]) -> tuple[Form, ...]:
     if "dyadic" in kinds:
         forms += dyadic_forms()
     else:
-        forms += [*log_forms(), *root_forms(), *quasi_polynomials(most)]
+        forms += [*log_forms(), *root_forms(), *quasi_polynomials(min(most, MOST_PERIODIC))]
     if "rational" in kinds:
         forms += rational_forms()
     if "harmonic" in kinds:

@@ -15,6 +15,9 @@ from steplaw.law.proof import prove
 from steplaw.law.recurrence import recurrence_forms, recurrence_text
 from steplaw.law.shape import Shape
 
+#: A recurrence is read off the values; naming its form costs about as much as a form in the list.
+RECURRENCE_BITS = 8.0
+
 
 def find_law(
     observations: Sequence[Observation],
@@ -98,7 +101,7 @@ def _find_single(
             return proved
     found = search(sizes, values, forms_for(sizes, values, exhaustive))
     if found is None:
-        found = search(sizes, values, recurrence_forms(sizes, values))
+        found = search(sizes, values, recurrence_forms(sizes, values), RECURRENCE_BITS)
     if found is not None:
         return _with_note(state(found, sizes, name), contradiction)
     law = _with_note(fit(merged, name), contradiction)

@@ -6,8 +6,10 @@ import math
 from collections.abc import Callable
 from dataclasses import dataclass
 from functools import lru_cache
+from typing import Any
 
 from steplaw.law.growth import FLAT, Vector
+from steplaw.law.special import harmonic
 
 LOG2_3 = math.log2(3)
 LOG2_7 = math.log2(7)
@@ -22,7 +24,7 @@ class FitTerm:
     text : str
         How it is written, with ``{n}`` for the size; empty for the constant 1.
     at : callable
-        Its value at a size from 2 on.
+        Its value at a size from 2 on, or at a tuple of sizes.
     growth : Vector
         Its order of growth.
     oddity : int
@@ -30,7 +32,7 @@ class FitTerm:
     """
 
     text: str
-    at: Callable[[float], float]
+    at: Callable[[Any], float]
     growth: Vector
     oddity: int
 
@@ -72,6 +74,15 @@ def _exponential(base: int, power: int) -> FitTerm:
     return FitTerm(text, lambda n: n**power * float(base) ** n, growth, 2 + power)
 
 
+def _harmonic(n: float) -> float:
+    return float(harmonic(int(n)))
+
+
+N_LOG_LOG = FitTerm(
+    "{n}*log(log({n}))", lambda n: n * math.log(math.log(n)), (0.0, 0.0, 1.0, 0.0, 1.0), 3
+)
+
+
 @lru_cache(maxsize=2)
 def leads(exponential: bool) -> tuple[FitTerm, ...]:
     """Give the terms that may lead, slowest first.
@@ -83,20 +94,22 @@ def leads(exponential: bool) -> tuple[FitTerm, ...]:
     """
     terms = [power_log(a / 2, b) for a in range(9) for b in (0, 1, 2)]
     terms += [power_log(1, -1), power_log(2, -1)]
-    terms.append(
-        FitTerm(
-            "{n}*log(log({n}))",
-            lambda n: n * math.log(math.log(n + 1) + 1e-9),
-            (0.0, 0.0, 1.0, 0.0, 1.0),
-            3,
-        )
-    )
+    terms.append(N_LOG_LOG)
     for exponent, text in ((LOG2_3, "log(3)/log(2)"), (LOG2_7, "log(7)/log(2)")):
         terms.append(
             FitTerm(
                 f"{{n}}**({text})", _power_log_value(exponent, 0), (0.0, 0.0, exponent, 0.0, 0.0), 2
             )
         )
+    terms.append(FitTerm("harmonic({n})", _harmonic, (0.0, 0.0, 0.0, 1.0, 0.0), 1))
+    terms.append(
+        FitTerm(
+            "({n} + 1)*harmonic({n})",
+            lambda n: (n + 1) * _harmonic(n),
+            (0.0, 0.0, 1.0, 1.0, 0.0),
+            1,
+        )
+    )
     if exponential:
         terms += [_exponential(b, p) for b in (2, 3, 4) for p in (0, 1)]
         golden = (1 + math.sqrt(5)) / 2
@@ -130,4 +143,6 @@ def bases(exponential: bool) -> tuple[Basis, ...]:
         out.append((lead,))
         out += [(lead, t) for t in lower]
         out += [(lead, t, s) for t in lower for s in lower if s.growth < t.growth]
+    one, log, _, n, nlog, n2, n3 = NATURAL
+    out += [(nlog, n, log, one), (n2, nlog, n, one), (n2, n, log, one), (n3, n2, n, one)]
     return tuple(sorted(out, key=lambda b: (len(b), sum(t.oddity for t in b))))

@@ -4,12 +4,13 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import lru_cache
 from typing import TYPE_CHECKING, Any
 
 from steplaw.law.fitbases import Basis, FitTerm, bases
 from steplaw.law.leading import leading_term
+from steplaw.law.leastsquares import least_squares, student
 from steplaw.law.model import Law, Observation
 from steplaw.law.snap import Coefficient, plain, recognise, write
 
@@ -23,15 +24,20 @@ LEAST_SIZES = 6
 ERROR_ALLOWED = 0.05
 SMOOTH = 0.01
 LEAD_SHARE = 0.08
+#: Standard deviation of rounding to a whole number, the square root of 1/12.
+ROUNDING = 0.29
+WIDE = 4
+CLOSE, RIVAL, SAME = 1.3, 1.8, 0.0005
 
 
 @dataclass(frozen=True, slots=True)
 class Data:
-    """Sizes, values and their standard errors, the larger sizes held out."""
+    """Sizes, values and their standard errors; the larger sizes are held out."""
 
     sizes: tuple[int, ...]
     values: Array
     noise: Array
+    rounded: Array
     draws: tuple[int, ...]
     held: int
 
@@ -48,8 +54,17 @@ class Data:
         scale = np.maximum(np.abs(self.values), 1.0)
         octaves = [max(1, n).bit_length() for n in self.sizes]
         crowd = np.array([octaves.count(o) for o in octaves], dtype=float)
-        error: Array = np.sqrt(self.noise**2 + (SMOOTH * scale) ** 2) * np.sqrt(crowd)
+        error: Array = np.sqrt((self.noise**2 + self.rounded**2 + (SMOOTH * scale) ** 2) * crowd)
         return 1.0 / error
+
+    @property
+    def damping(self) -> Array:
+        """Give less than one where a count is so small that being whole matters."""
+        import numpy as np
+
+        scale = np.maximum(np.abs(self.values), 1.0)
+        damping: Array = 1 / np.sqrt(1 + (self.rounded / (SMOOTH * scale)) ** 2)
+        return damping
 
     @property
     def relative_noise(self) -> float:
@@ -68,7 +83,6 @@ class Trial:
     basis: Basis
     coefficients: Array
     held_error: float
-    inside: float
     score: float
 
 
@@ -97,23 +111,19 @@ def fit(observations: Sequence[Observation], name: str) -> Law:
     data = _prepare(observations)
     if data is None:
         return Law(None, None, "open", note=_too_few(observations), names=(name,))
+    if not _wide_enough(data):
+        return _open(data, name, "the sizes are too close together to tell orders of growth apart")
     trials = _trials(data)
-    noise = data.relative_noise
     if not trials:
         return _open(data, name, "no growth in the basis fits the values")
     best = min(trial.score for trial in trials)
-    rough = max(noise, min(trial.inside for trial in trials))
-    allowed = ERROR_ALLOWED + 2 * noise
-    if best > allowed:
-        return _open(
-            data, name,
-            f"nothing fits: the best formula is {100 * best:.1f} % off at larger sizes",
-        )  # fmt: skip
-    tolerance = 1.5 * best + 2 * noise + 0.0005
-    close = [t for t in trials if t.score <= tolerance]
-    chosen = min(close, key=_plainness)
-    wide = 1.5 * best + 2 * rough + 0.0005
-    rivals = _rivals(chosen, [t for t in trials if t.score <= wide])
+    chosen = min((t for t in trials if t.score <= CLOSE * best + SAME), key=_plainness)
+    allowed = ERROR_ALLOWED + 2 * data.relative_noise
+    if best > allowed or chosen.held_error > 2 * allowed:
+        off = 100 * max(best, chosen.held_error)
+        return _open(data, name, f"nothing fits: the best formula is {off:.0f} % off")
+    nearby = [t for t in trials if t.score <= RIVAL * best + SAME]
+    rivals = _rivals(chosen, nearby)
     if rivals:
         texts = [leading_text(t, name) for t in (chosen, *rivals)]
         return _open(
@@ -121,7 +131,7 @@ def fit(observations: Sequence[Observation], name: str) -> Law:
             "several orders of growth fit equally well: " + ", ".join(texts)
             + "; larger sizes would tell them apart",
         )  # fmt: skip
-    return _law(data, chosen, name)
+    return _law(data, chosen, nearby, name)
 
 
 def _prepare(observations: Sequence[Observation]) -> Data | None:
@@ -142,7 +152,8 @@ def _prepare(observations: Sequence[Observation]) -> Data | None:
     )
     draws = tuple(o.draws for o in kept)
     held = min(max(2, round(0.3 * len(kept))), len(kept) - 4)
-    return Data(sizes, values, noise, draws, held)
+    rounded = np.array([ROUNDING if o.value.denominator == 1 else 0.0 for o in kept])
+    return Data(sizes, values, noise, rounded, draws, held)
 
 
 def _float(number: Any) -> float:
@@ -180,29 +191,41 @@ def _design(sizes: tuple[int, ...], exponential: bool) -> list[tuple[list[Basis]
 def _trials(data: Data) -> list[Trial]:
     import numpy as np
 
-    largest = data.sizes[-1]
-    exponential = largest <= 64 and math.log2(1 + abs(data.values[-1])) >= 0.35 * largest
+    exponential = _exponential(data)
     weights, scale = data.weights, np.maximum(np.abs(data.values), 1.0)
     trials: list[Trial] = []
     for group, stack in _design(data.sizes, exponential):
         width = stack.shape[2]
         if len(data.sizes) - data.held < width + 2:
             continue
-        coefficients = _least_squares(
+        coefficients = least_squares(
             stack[:, data.train], data.values[data.train], weights[data.train]
         )
         guess = np.einsum("bnp,bp->bn", stack, coefficients)
         error = np.abs(guess - data.values) / scale
         held = error[:, -data.held :]
-        rms_held = np.sqrt(np.mean(held**2, axis=1))
-        inside = np.sqrt(np.average(error[:, data.train] ** 2, axis=1, weights=_octave(data)))
+        damped = error * data.damping
+        rms_held = np.sqrt(np.mean(damped[:, -data.held :] ** 2, axis=1))
+        inside = np.sqrt(np.average(damped[:, data.train] ** 2, axis=1, weights=_octave(data)))
         score = np.sqrt((2 * rms_held**2 + inside**2) / 3)
         share = coefficients[:, 0] * stack[:, -1, 0] / scale[-1]
         for k, basis in enumerate(group):
             if share[k] >= LEAD_SHARE and math.isfinite(score[k]):
-                errors = float(held[k].max()), float(inside[k]), float(score[k])
+                errors = float(held[k].max()), float(score[k])
                 trials.append(Trial(basis, coefficients[k], *errors))
     return trials
+
+
+def _exponential(data: Data) -> bool:
+    """Say whether the values are large enough for powers of a constant."""
+    largest = data.sizes[-1]
+    return largest <= 64 and math.log2(1 + abs(data.values[-1])) >= 0.35 * largest
+
+
+def _wide_enough(data: Data) -> bool:
+    largest = data.sizes[-1]
+    wide = largest >= WIDE * data.sizes[0]
+    return (wide and largest >= 4 * WIDE) or (_exponential(data) and largest >= 10)
 
 
 def _octave(data: Data) -> Array:
@@ -212,36 +235,22 @@ def _octave(data: Data) -> Array:
     return np.array([1.0 / octaves.count(o) for o in octaves])
 
 
-def _least_squares(stack: Any, values: Array, weights: Array) -> Any:
-    """Solve many small weighted least squares problems at once, by QR."""
-    import numpy as np
-
-    scaled = stack * weights[None, :, None]
-    norms = np.linalg.norm(scaled, axis=1)
-    norms[norms == 0] = 1.0
-    q, r = np.linalg.qr(scaled / norms[:, None, :])
-    diagonal = np.abs(np.diagonal(r, axis1=1, axis2=2)).min(axis=1)
-    right = np.einsum("bnp,n->bp", q, values * weights)
-    r[diagonal < 1e-9] = np.eye(stack.shape[2])
-    right[diagonal < 1e-9] = np.nan
-    return np.linalg.solve(r, right[:, :, None])[:, :, 0] / norms
+def _plainness(trial: Trial) -> tuple[float, float]:
+    return _cost(trial), trial.score
 
 
-def _plainness(trial: Trial) -> tuple[int, int, float]:
-    return len(trial.basis), sum(t.oddity for t in trial.basis), trial.score
+def _cost(trial: Trial) -> float:
+    """Give the number of terms, a rarer form counting as half a term more or so."""
+    return len(trial.basis) + sum(t.oddity for t in trial.basis) / 2
 
 
 def _rivals(chosen: Trial, close: Sequence[Trial]) -> list[Trial]:
-    """Give the best trial of every other order that does as well with as few terms."""
-    lead = chosen.basis[0]
+    """Give the best trial of every other order that does about as well and is about as plain."""
     by_order: dict[str, Trial] = {}
     for trial in sorted(close, key=lambda t: t.score):
         other = trial.basis[0]
-        if other.growth == lead.growth or len(trial.basis) > len(chosen.basis):
-            continue
-        if other.oddity > lead.oddity + 1 and trial.score > 0.6 * chosen.score:
-            continue
-        by_order.setdefault(other.text, trial)
+        if other.growth != chosen.basis[0].growth and _cost(trial) <= _cost(chosen) + 0.5:
+            by_order.setdefault(other.text, trial)
     return list(by_order.values())[:4]
 
 
@@ -264,8 +273,9 @@ def _evidence(data: Data) -> dict[str, Any]:
     }
 
 
-def _law(data: Data, chosen: Trial, name: str) -> Law:
+def _law(data: Data, chosen: Trial, nearby: Sequence[Trial], name: str) -> Law:
     found = _intervals(data, chosen)
+    found[0] = _widened(found[0], nearby)
     found = recognise(found, data, chosen.held_error)
     formula = write(found, name)
     note = (
@@ -294,7 +304,7 @@ def _intervals(data: Data, chosen: Trial) -> list[Coefficient]:
 
     matrix = np.stack([[t.at(float(n)) for t in chosen.basis] for n in data.sizes])
     weights = data.weights
-    solved = _least_squares(matrix[None], data.values, weights)[0]
+    solved = least_squares(matrix[None], data.values, weights)[0]
     rest = (matrix @ solved - data.values) * weights
     freedom = len(data.sizes) - len(chosen.basis)
     variance = float(rest @ rest) / freedom
@@ -311,25 +321,15 @@ def _intervals(data: Data, chosen: Trial) -> list[Coefficient]:
     return out
 
 
+def _widened(first: Coefficient, nearby: Sequence[Trial]) -> Coefficient:
+    """Let the leading interval span what other lower terms, about as good, make of it."""
+    others = [float(t.coefficients[0]) for t in nearby if t.basis[0].text == first.term.text]
+    low, high = min(first.low, *others), max(first.high, *others)
+    return replace(first, low=low, high=high)
+
+
 def _noise_floor(data: Data) -> float:
     """Give the residual variance that the spread of the draws alone would cause."""
     import numpy as np
 
     return float(np.mean((data.noise * data.weights) ** 2))
-
-
-def student(freedom: int) -> float:
-    """Give the two-sided 95 % point of Student's distribution.
-
-    Notes
-    -----
-    By the expansion of Abramowitz & Stegun, Handbook of Mathematical Functions, 26.7.5, with
-    the exact points for one and two degrees of freedom.
-    """
-    if freedom <= 2:
-        return {1: 12.706, 2: 4.303}.get(freedom, math.inf)
-    x = 1.959963985
-    g1 = (x**3 + x) / 4
-    g2 = (5 * x**5 + 16 * x**3 + 3 * x) / 96
-    g3 = (3 * x**7 + 19 * x**5 + 17 * x**3 - 15 * x) / 384
-    return x + g1 / freedom + g2 / freedom**2 + g3 / freedom**3

@@ -170,8 +170,8 @@ def write_series(series: Series) -> str:
     groups = _by_shape(series)
     ordered = sorted(groups.items(), key=lambda g: _rounded(growth_of(g[0])), reverse=True)
     out = ""
-    for shape, held in ordered:
-        sign, text = _write_group(shape, held)
+    for shape, members in ordered:
+        sign, text = _write_group(shape, members)
         if not out:
             out = f"-{text}" if sign < 0 else text
         else:
@@ -182,15 +182,19 @@ def write_series(series: Series) -> str:
 def _write_group(shape: Monomial, members: list[tuple[Monomial, Coefficient]]) -> tuple[int, str]:
     if len(members) == 1:
         key, c = members[0]
-        return (-1 if c < 0 else 1), _write_monomial(abs(c), key)
+        return (-1 if c < 0 else 1), _write_monomial(_positive(c), key)
     inner = ""
     for key, c in members:
         constants = tuple(f for f in key if not f[0].growth)
-        text = _write_monomial(abs(c), constants)
+        text = _write_monomial(_positive(c), constants)
         inner += (" - " if c < 0 else " + ") + text if inner else ("-" if c < 0 else "") + text
     if not shape:
         return 1, inner
     return 1, _join([f"({inner})"], shape)
+
+
+def _positive(c: Coefficient) -> Coefficient:
+    return -c if c < 0 else c
 
 
 def _write_monomial(c: Coefficient, key: Monomial) -> str:

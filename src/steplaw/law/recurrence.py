@@ -233,9 +233,13 @@ def _cycle(period: int, factor: tuple[int, ...], place: int) -> Term:
     parts = []
     for rest, value in enumerate(values):
         # [n = rest (mod period)] as a difference of two neighbouring floors
-        parts.append((Fraction(value), f"floor(({{n}} + {period - rest})/{period})", ""))
-        parts.append((Fraction(-value), f"floor(({{n}} + {period - rest - 1})/{period})", ""))
+        parts.append((Fraction(value), _floor(period - rest, period), ""))
+        parts.append((Fraction(-value), _floor(period - rest - 1, period), ""))
     return Term(f"({write_sum(parts)})", lambda n: values[n % period])
+
+
+def _floor(shift: int, period: int) -> str:
+    return f"floor(({{n}} + {shift})/{period})" if shift else f"floor({{n}}/{period})"
 
 
 def _divide_out(polynomial: list[Fraction], factor: list[Fraction]) -> tuple[list[Fraction], int]:

@@ -5,7 +5,6 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
-from fractions import Fraction
 from typing import TYPE_CHECKING, Any
 
 from steplaw.law.constants import known_constant, simple_fraction
@@ -137,13 +136,4 @@ def digits(number: float, width: float) -> str:
         return "0"
     scale = math.log10(number / width) if width > 0 else 7.0
     count = min(9, max(4, math.ceil(scale) + 2))
-    text = f"{number:.{count}g}"
-    return text if "e" not in text else str(_decimal(text))
-
-
-def _decimal(text: str) -> str:
-    number = Fraction(text)
-    if number.denominator == 1:
-        return f"{number.numerator}.0"
-    mantissa, _, exponent = text.partition("e")
-    return f"{mantissa}*10**({int(exponent)})"
+    return f"{number:.{count}g}"
