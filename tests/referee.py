@@ -264,6 +264,9 @@ else:
         return counts
 
     def _first_resume(code: CodeType) -> int:
+        # A subject may have replaced the builtin `range`: nothing here looks it up.
         resume = dis.opmap["RESUME"]
-        raw = code.co_code
-        return next(offset for offset in range(0, len(raw), 2) if raw[offset] == resume)
+        raw, offset = code.co_code, 0
+        while raw[offset] != resume:
+            offset += 2
+        return offset

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import gc
 import sys
 import traceback
 import types
@@ -11,7 +12,6 @@ from pathlib import Path
 from typing import Any
 
 from referee import Counts, referee, steady
-
 from steplaw.tally import Counter, Tally, counting
 
 Make = Callable[[], Callable[[], Any]]
@@ -39,9 +39,10 @@ def differences(make: Make) -> list[str]:
         warnings.simplefilter("ignore")
         hook, sys.unraisablehook = sys.unraisablehook, sys.__unraisablehook__
         try:
-            plain = _outcome(make())
             _outcome(make())
+            plain = _outcome(make())
             before = referee(make())
+            watched = _describe(before.result, before.error)
             counter, outcome = _probed(make())
             after = referee(make())
         finally:
@@ -50,7 +51,7 @@ def differences(make: Make) -> list[str]:
         return _unsteady(before, after)
     found = _by_instruction(before, counter.instructions())
     found += _by_tally(before, counter.tally)
-    for name, other in (("probes", outcome), ("referee", _described(before))):
+    for name, other in (("probes", outcome), ("referee", watched)):
         if other != plain:
             found.append(f"outcome: {plain} as it is, {other} under {name}")
     return found
@@ -68,19 +69,20 @@ def _probed(call: Callable[[], Any]) -> tuple[Counter, Any]:
 
 
 def _outcome(call: Callable[[], Any]) -> Any:
+    result: Any = None
+    error: BaseException | None = None
     with steady():
         try:
-            return _describe(call(), None)
+            result = call()
         except BaseException as fault:
-            return _describe(None, fault)
-
-
-def _described(counts: Counts) -> Any:
-    return _describe(counts.result, counts.error)
+            error = fault
+    return _describe(result, error)
 
 
 def _describe(result: Any, error: BaseException | None) -> Any:
     """Give what a person would see: the value, or the exception and where it went through."""
+    # Generators dropped in a cycle may still write to what the program returned.
+    gc.collect(1)
     if error is None:
         return repr(result)
     trail = [

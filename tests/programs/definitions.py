@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 from .choosing import one_of, weighted
-from .expressions import Scope
-from .statements import Lines, Statements, indent
+from .expressions import Lines, Scope, indent
+from .statements import Statements
 
 START = ["xs = [b, 3, a % 7]", "d = {1: a, 3: 5}", "box = Box(c)"]
 KINDS = ((6, "plain"), (4, "generator"), (3, "async"), (2, "asyncgen"))
@@ -15,7 +15,8 @@ class Definitions(Statements):
 
     def function(self) -> Lines:
         shape = weighted(
-            self.chooser, [(16, self.grown), (1, self.recursive), (1, self.wide), (1, self.long_jump)]
+            self.chooser,
+            [(16, self.grown), (1, self.recursive), (1, self.wide), (1, self.long_jump)],
         )
         return shape()
 
@@ -55,7 +56,11 @@ class Definitions(Statements):
 
     def _uses(self, kind: str, name: str) -> list[str]:
         if kind == "plain":
-            return [f"{name}({{0}}, {{1}})", f"{name}(c={{0}}, a={{1}})", f"{name}(*({{0}}, {{1}}))"]
+            return [
+                f"{name}({{0}}, {{1}})",
+                f"{name}(c={{0}}, a={{1}})",
+                f"{name}(*({{0}}, {{1}}))",
+            ]
         if kind == "generator":
             return [
                 f"summed({name}({{0}}, {{1}}))",

@@ -6,7 +6,22 @@ from dataclasses import dataclass, field, replace
 
 from .choosing import Chooser, one_of, weighted
 
+Lines = list[str]
+CAUGHT = (
+    "Exception",
+    "ValueError",
+    "(KeyError, IndexError)",
+    "Lost",
+    "Late",
+    "ZeroDivisionError",
+    "LookupError",
+    "BaseException",
+)
 DIVISORS = ("3", "7", "(b - b or 2)")
+
+
+def indent(lines: Lines) -> Lines:
+    return [f"    {line}" for line in lines]
 
 
 @dataclass(frozen=True)
@@ -39,7 +54,10 @@ class Scope:
 
     def inside(self, times: int = 1, **changes: object) -> Scope:
         return replace(
-            self, depth=self.depth + 1, weight=self.weight * times, **changes  # type: ignore[arg-type]
+            self,
+            depth=self.depth + 1,
+            weight=self.weight * times,
+            **changes,  # type: ignore[arg-type]
         )
 
 
@@ -56,6 +74,10 @@ class Expressions:
         self.chooser = chooser
         self.calls: list[tuple[str, int]] = []
         self.serial = 0
+
+    def block(self, scope: Scope, most: int = 3) -> Lines:
+        """Give one to `most` statements; see `Statements`."""
+        raise NotImplementedError
 
     def below(self, limit: int) -> int:
         return self.chooser.below(limit)

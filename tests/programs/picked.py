@@ -5,6 +5,8 @@ Each is a function of no arguments that does the same on every call and returns 
 
 from __future__ import annotations
 
+import importlib
+import sys
 from collections.abc import Callable
 from typing import Any
 
@@ -28,33 +30,30 @@ def needs(package: str) -> Callable[[Call], Call]:
 
 
 def _load() -> None:
-    from programs import picked_data, picked_own, picked_packages, picked_text  # noqa: F401
+    for part in ("data", "text", "own", "objects", "loops", "rare", "packages"):
+        importlib.import_module(f"programs.picked_{part}")
 
 
 def picked_call(name: str) -> Call:
     """Give the picked call of a name."""
     _load()
-
     return CALLS[name]
 
 
 def names() -> list[str]:
     """Give the names of all picked calls."""
     _load()
-
     return list(CALLS)
 
 
 def pure(module: str, *blocked: str) -> Any:
     """Import a module of the standard library without its C half."""
-    import importlib
-    import sys
-
     marker = f"{module} in Python alone"
     if marker not in sys.modules:
         names = (module, *blocked)
         kept = {name: sys.modules.pop(name) for name in names if name in sys.modules}
-        sys.modules.update({name: None for name in blocked})  # type: ignore[misc]
+        for name in blocked:
+            sys.modules[name] = None  # type: ignore[assignment]
         try:
             sys.modules[marker] = importlib.import_module(module)
         finally:

@@ -1,5 +1,7 @@
 """Picked calls of networkx, sortedcontainers, mpmath and sympy."""
 
+# mypy: ignore-errors
+
 from __future__ import annotations
 
 import random

@@ -1,5 +1,7 @@
 """Picked calls of the standard library that read and write text."""
 
+# mypy: ignore-errors
+
 from __future__ import annotations
 
 from typing import Any
@@ -19,8 +21,10 @@ def difflib_unified() -> Any:
     from difflib import get_close_matches, ndiff, unified_diff
 
     old, new = TEXT.split(), TEXT.replace("sailing", "crossing").split()
-    return list(unified_diff(old, new)), list(ndiff(old[:9], new[:9])), get_close_matches(
-        "Bremness", PORTS
+    return (
+        list(unified_diff(old, new)),
+        list(ndiff(old[:9], new[:9])),
+        get_close_matches("Bremness", PORTS),
     )
 
 
@@ -36,8 +40,8 @@ def json_decoding_in_python() -> Any:
     from json import decoder, scanner
 
     plain = decoder.JSONDecoder()
-    plain.parse_string = decoder.py_scanstring  # type: ignore[attr-defined]
-    plain.scan_once = scanner.py_make_scanner(plain)  # type: ignore[attr-defined]
+    plain.parse_string = decoder.py_scanstring
+    plain.scan_once = scanner.py_make_scanner(plain)
     return plain.decode('{"a": [1, 2.5, {"b": "x\\u00e9\\n"}], "c": null, "d": [true, false, "y"]}')
 
 
@@ -46,7 +50,7 @@ def json_decoding_faults() -> Any:
     from json import decoder, scanner
 
     plain = decoder.JSONDecoder()
-    plain.scan_once = scanner.py_make_scanner(plain)  # type: ignore[attr-defined]
+    plain.scan_once = scanner.py_make_scanner(plain)
     said = []
     for text in ('{"a": }', "[1, 2", "{,}", '"x', "1 2"):
         try:
@@ -89,7 +93,7 @@ def re_compiling() -> Any:
 def re_escape_and_scanner() -> Any:
     import re
 
-    scanner = re.Scanner(  # type: ignore[attr-defined]
+    scanner = re.Scanner(
         [(r"\d+", lambda s, t: int(t)), (r"[a-z]+", lambda s, t: t), (r"\s+", None)]
     )
     return scanner.scan("12 ab 3"), re.escape("a.b"), re.sub("a", lambda m: m[0] * 2, "banana")
@@ -109,7 +113,7 @@ def ast_transforming() -> Any:
     import ast
 
     class Doubling(ast.NodeTransformer):
-        def visit_Constant(self, node: ast.Constant) -> ast.AST:  # noqa: N802 - the library's name
+        def visit_Constant(self, node: ast.Constant) -> ast.AST:
             return ast.Constant(node.value * 2)
 
     tree = Doubling().visit(ast.parse("a = 1 + 2 * b"))
@@ -196,9 +200,11 @@ def shlex_and_fnmatch() -> Any:
     import fnmatch
     import shlex
 
-    return shlex.split("a 'b c' --d=\"e f\" # no", comments=True), shlex.join(["a b", "c"]), [
-        p for p in PORTS if fnmatch.fnmatchcase(p, "*[ae]?")
-    ]
+    return (
+        shlex.split("a 'b c' --d=\"e f\" # no", comments=True),
+        shlex.join(["a b", "c"]),
+        [p for p in PORTS if fnmatch.fnmatchcase(p, "*[ae]?")],
+    )
 
 
 @picked
@@ -218,9 +224,11 @@ def html_and_xml() -> Any:
     tags = Tags()
     tags.feed("<p class='a'>x &amp; <br/><b>y</b></p>")
     root = ElementTree.fromstring("<a><b n='1'/><c><b n='2'/></c></a>")
-    return tags.seen, html.unescape("&lt;&eacute;"), [
-        b.get("n") for b in ElementPath.findall(root, ".//b")
-    ]
+    return (
+        tags.seen,
+        html.unescape("&lt;&eacute;"),
+        [b.get("n") for b in ElementPath.findall(root, ".//b")],
+    )
 
 
 @picked
@@ -245,8 +253,10 @@ def ipaddress_networks() -> Any:
     import ipaddress
 
     net = ipaddress.ip_network("10.1.0.0/29")
-    return list(net.hosts()), net.overlaps(ipaddress.ip_network("10.1.0.4/30")), str(
-        ipaddress.ip_address("2001:db8::1").reverse_pointer
+    return (
+        list(net.hosts()),
+        net.overlaps(ipaddress.ip_network("10.1.0.4/30")),
+        str(ipaddress.ip_address("2001:db8::1").reverse_pointer),
     )
 
 
@@ -271,9 +281,13 @@ def pathlibpure() -> Any:
     from pathlib import PurePosixPath
 
     path = PurePosixPath("/a/b/../c.tar.gz")
-    return path.parts, path.suffixes, path.with_name("d"), path.relative_to("/a"), [
-        str(p) for p in path.parents
-    ]
+    return (
+        path.parts,
+        path.suffixes,
+        path.with_name("d"),
+        path.relative_to("/a"),
+        [str(p) for p in path.parents],
+    )
 
 
 @picked
@@ -289,6 +303,8 @@ def zip_and_base64() -> Any:
     import base64
     import quopri
 
-    return base64.b85encode(TEXT.encode())[:20], base64.b32decode("MZXW6==="), quopri.encodestring(
-        "é=".encode()
+    return (
+        base64.b85encode(TEXT.encode())[:20],
+        base64.b32decode("MZXW6==="),
+        quopri.encodestring("é=".encode()),
     )

@@ -25,6 +25,7 @@ HELPERS: dict[str, str] = {
     "Late": "class Late(Lost):\n    def __init__(self, hours=1):\n"
     "        super().__init__(hours)\n        self.hours = hours\n",
     "minus": "def minus(p, q=1):\n    return p - q\n",
+    "steady_range": "def steady_range(*given):\n    return range(*given)\n",
     "gathered": "def gathered(first, *rest, z=0, **named):\n"
     "    return first + len(rest) + z + sum(named.values())\n",
     "remembered": "@lru_cache(maxsize=3)\ndef remembered(p):\n"
@@ -125,7 +126,8 @@ HELPERS: dict[str, str] = {
     "        return inside\n    return wrapping\n",
     "Seat": "@dataclass(order=True)\nclass Seat:\n    row: int\n    place: int = 2\n",
     "Frozen": "@dataclass(frozen=True)\nclass Frozen:\n    row: int\n"
-    "    def __post_init__(self):\n        if self.row > 40:\n            raise ValueError(self.row)\n",
+    "    def __post_init__(self):\n        if self.row > 40:\n"
+    "            raise ValueError(self.row)\n",
     "Pair": "Pair = namedtuple('Pair', 'left right')\n",
     "kindly": "@singledispatch\ndef kindly(p):\n    return 0\n@kindly.register(int)\n"
     "def _(p):\n    return p + 1\n@kindly.register(str)\ndef _(p):\n    return len(p)\n",

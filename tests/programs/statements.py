@@ -1,9 +1,11 @@
-"""Statements of generated programs: every compound statement, nested, leaving early in every way."""
+"""Statements of generated programs: every kind, nested, leaving early in every way."""
 
 from __future__ import annotations
 
 from .choosing import one_of, weighted
-from .expressions import Expressions, Scope
+from .expressions import CAUGHT, Lines, Scope, indent
+from .inner import Inner
+from .loops import Loops
 
 DEEPEST = 3
 HEAVIEST = 250
@@ -16,24 +18,9 @@ FAULTS = (
     "IndexError",
     "StopIteration(4)",
 )
-CAUGHT = (
-    "Exception",
-    "ValueError",
-    "(KeyError, IndexError)",
-    "Lost",
-    "Late",
-    "ZeroDivisionError",
-    "LookupError",
-    "BaseException",
-)
-Lines = list[str]
 
 
-def indent(lines: Lines) -> Lines:
-    return [f"    {line}" for line in lines]
-
-
-class Statements(Expressions):
+class Statements(Loops, Inner):
     """Builds statements as lists of source lines."""
 
     def block(self, scope: Scope, most: int = 3) -> Lines:
@@ -60,6 +47,7 @@ class Statements(Expressions):
             options += [
                 (5, self.branching),
                 (5, self.for_loop),
+                (4, self.range_nest),
                 (3, self.while_loop),
                 (6, self.trying),
                 (4, self.with_block),
@@ -104,7 +92,7 @@ class Statements(Expressions):
                 ["del d[3]"],
                 [f"a = {value}; b = a + {other}; c -= b"],
                 [f"if (b := {value}) > 2: c += b"],
-                [f"text = f'{{a}}-{{b:>4}}'.split('-')", "c += len(text)"],
+                ["text = f'{a}-{b:>4}'.split('-')", "c += len(text)"],
                 [f"seat = Seat({value})", "a += seat.row + (seat < Seat(3))"],
                 [f"a = Frozen({value}).row"],
                 [f"pair = Pair({value}, b)", "a, b = pair._replace(left=2)"],
@@ -120,7 +108,7 @@ class Statements(Expressions):
                 [f"xs.append({value})"],
                 [f"xs = {listing}"],
                 [f"xs[1:2] = {listing}"],
-                [f"xs[:] = sorted(xs, key=lambda p: (p % 3, p))[:6]"],
+                ["xs[:] = sorted(xs, key=lambda p: (p % 3, p))[:6]"],
                 ["del xs[::2]"],
                 ["xs.sort(key=lambda p: -p)"],
                 [f"d |= dict.fromkeys({listing}, 2)"],
@@ -186,79 +174,10 @@ class Statements(Expressions):
             lines += ["else:", *indent(self.block(scope.inside(), 2))]
         return lines
 
-    def for_loop(self, scope: Scope) -> Lines:
-        i, j = self.fresh("i"), self.fresh("j")
-        times = 1 + self.below(5)
-        names, heads = weighted(
-            self.chooser,
-            [
-                (6, ((i,), (f"{i} in range({times})",))),
-                (1, ((i,), (f"{i} in range({times}, 0, -1)", f"{i} in range(0, {times}, 2)"))),
-                (1, ((i,), (f"{i} in range(b % 4)", f"{i} in range(a % 3, c % 5)"))),
-                (2, ((i,), (f"{i} in xs[:5]", f"{i} in list(d)[:3]", f"{i} in (a, b, 2)"))),
-                (
-                    1,
-                    (
-                        (i, j),
-                        (
-                            f"{i}, {j} in enumerate(xs[:4])",
-                            f"{i}, {j} in zip(xs, range({times}))",
-                            f"{i}, {j} in list(d.items())[:3]",
-                            f"{i}, *{j} in [(a, 1), (b,)]",
-                        ),
-                    ),
-                ),
-                (
-                    2,
-                    (
-                        (i,),
-                        (
-                            f"{i} in counted({times})",
-                            f"{i} in (p * 2 for p in range({times}))",
-                            f"{i} in map(minus, xs[:3])",
-                            f"{i} in reversed(range({times}))",
-                            f"{i} in Box({times})",
-                            f"{i} in iter(lambda: shared(1) % 5, 3)",
-                            f"{i} in [p for p in range({times}) if p != b]",
-                            f"{i} in {{1, 2, 5}}",
-                        ),
-                    ),
-                ),
-                (1, ((), (f"_ in 'x' * {times}", f"xs[0] in range({times})"))),
-            ],
-        )
-        head = one_of(self.chooser, heads)
-        known = tuple(name for name in names if "*" + name not in head)
-        inside = scope.inside(max(times, 5), in_loop=True, ints=(*known, *scope.ints))
-        lines = [f"for {head}:", *indent(self.block(inside))]
-        if self.below(3) == 2:
-            lines += ["else:", *indent(self.block(scope.inside(), 2))]
-        return lines
-
-    def while_loop(self, scope: Scope) -> Lines:
-        k = self.fresh("k")
-        times = 1 + self.below(5)
-        inside = scope.inside(times, in_loop=True, ints=(k, *scope.ints))
-        body = self.block(inside)
-        shape = self.below(4)
-        if shape == 0:
-            lines = [f"{k} = {times}", f"while {k} > 0:", f"    {k} -= 1", *indent(body)]
-        elif shape == 1:
-            lines = [f"{k} = 0", "while True:", f"    {k} += 1"]
-            lines += [f"    if {k} > {times}: break", *indent(body)]
-        elif shape == 2:
-            lines = [f"{k} = {times}", f"while {k} > 0 and ({self.test(scope)} or {k} > 1):"]
-            lines += [f"    {k} -= 1", *indent(body)]
-        else:
-            lines = [f"{k} = {times}", f"while ({k} := {k} - 1) >= 0:", *indent(body)]
-        if shape != 1 and self.below(3) == 2:
-            lines += ["else:", *indent(self.block(scope.inside(), 2))]
-        return lines
-
     def trying(self, scope: Scope) -> Lines:
         lines = ["try:", *indent(self.block(scope.inside()))]
         catchers = self.below(3)
-        for at in range(max(catchers, 0)):
+        for _ in range(catchers):
             kind = one_of(self.chooser, CAUGHT)
             named = self.below(3)
             fault = self.fresh("fault")
@@ -289,7 +208,13 @@ class Statements(Expressions):
             not way.startswith("return") and not scope.in_loop
         ):
             way = "pass"
-        return ["try:", *indent(body + last), "finally:", f"    if {self.test(scope)}:", f"        {way}"]
+        return [
+            "try:",
+            *indent(body + last),
+            "finally:",
+            f"    if {self.test(scope)}:",
+            f"        {way}",
+        ]
 
     def with_block(self, scope: Scope) -> Lines:
         mode = self.below(5)
@@ -314,7 +239,17 @@ class Statements(Expressions):
     def matching(self, scope: Scope) -> Lines:
         subject = one_of(
             self.chooser,
-            ("a", "(a, b)", "xs", "d", "box", "[a, *xs]", "{'n': a, 'm': (b, c)}", "str(a)", "Seat(a)"),
+            (
+                "a",
+                "(a, b)",
+                "xs",
+                "d",
+                "box",
+                "[a, *xs]",
+                "{'n': a, 'm': (b, c)}",
+                "str(a)",
+                "Seat(a)",
+            ),
         )
         patterns = [
             "0 | 1 | 2",
@@ -366,112 +301,3 @@ class Statements(Expressions):
         if self.below(3) == 2:
             lines += ["finally:", *indent(self.block(inside, 1))]
         return lines
-
-    # Definitions inside a function.
-
-    def inner_function(self, scope: Scope) -> Lines:
-        f = self.fresh("inner")
-        inner = Scope(depth=scope.depth + 1, weight=scope.weight * 2, ints=("a", "p", "b"))
-        body = self.block(inner, 2)
-        change = one_of(self.chooser, ("b += p", "xs.append(p)", "pass"))
-        lines = [f"def {f}(p, q=2, *, z=1):"]
-        lines += ["    nonlocal a, b, c, xs, d, box"] if scope.outer != ("module",) else []
-        lines += [f"    {change}", *indent(body), "    return p + q + z"]
-        use = one_of(
-            self.chooser,
-            (
-                f"c = {f}({self.number(scope, 0)})",
-                f"c = {f}(1, z={self.number(scope, 0)})",
-                f"c = sum(map({f}, (1, 2)))",
-                f"c = max([{f}(p) for p in (1, 2)])",
-                f"c = partial({f}, 1)(q=3)",
-            ),
-        )
-        return [*lines, use]
-
-    def inner_class(self, scope: Scope) -> Lines:
-        name = self.fresh("Kind")
-        base = one_of(self.chooser, ("Box", "Deck", "Plain"))
-        return [
-            f"class {name}({base}):",
-            f"    level = {self.number(scope, 0)}",
-            "    many = [p for p in range(3)]",
-            f"    if level > 2:",
-            "        extra = lambda self: self.level",
-            "    def worth(self, p):",
-            f"        return super().worth(p) + len(__class__.many)",
-            f"c = {name}(a).worth(2)",
-        ]
-
-    def executed(self, scope: Scope) -> Lines:
-        body = one_of(
-            self.chooser,
-            (
-                "for p in range(3):\\n    out.append(p)",
-                "def made(p):\\n    return p + 1\\nout.append(made(2))",
-                "out += [p for p in range(4) if p % 2]",
-                "try:\\n    1 // 0\\nexcept ZeroDivisionError:\\n    out.append(0)",
-                "raise KeyError(out)",
-            ),
-        )
-        return [f"exec('{body}', {{'out': log}})"]
-
-    # Generators.
-
-    def yielding(self, scope: Scope) -> Lines:
-        value = self.number(scope, 1)
-        options = [[f"yield {value}"], [f"a = yield {value}", "a = a or 1"], ["yield"]]
-        if scope.kind == "generator":
-            options += [
-                [f"b = (yield from counted({self.below(4)})) or 0"],
-                [f"yield from (p + 1 for p in xs[:3])"],
-                [f"yield from xs[:{self.below(3)}]"],
-                [f"c = (yield from bouncing({self.below(3)})) or 0"],
-            ]
-        return one_of(self.chooser, options)
-
-    def generator_use(self, scope: Scope) -> Lines:
-        g, v = self.fresh("gen"), self.fresh("v")
-        source = one_of(
-            self.chooser,
-            (f"counted({1 + self.below(4)})", f"bouncing({1 + self.below(4)})", "iter(Box(3))"),
-        )
-        fault = one_of(self.chooser, ("ValueError", "Lost", "KeyError", "GeneratorExit"))
-        uses = (
-            [f"for {v} in {g}:", f"    a += {v}", "    if a > 5: break"],
-            [f"a = next({g})", f"b = next({g}, 3)", f"{g}.close()"],
-            [f"a = next({g})", f"{g} = None"],
-            [f"next({g})", f"b = {g}.send(4)"],
-            [f"next({g})", f"b = {g}.throw({fault})"],
-            [f"{g}.throw({fault})"],
-            [f"{g}.close()"],
-            [f"a = sum({g})"],
-            [f"a, *rest = {g}"],
-            [f"b = max({g}, default=0)", f"c = next({g}, 2)"],
-            [f"for {v} in {g}:", f"    {g}.close()"],
-            [f"d = dict(zip({g}, {g}))"],
-            [f"a = next({g})", f"a = next({g})", f"a = next({g})", f"a = next({g})", f"a = next({g})"],
-        )
-        lines = [f"{g} = {source}", *one_of(self.chooser, uses)]
-        if not self.below(2):
-            return lines
-        kind = one_of(self.chooser, CAUGHT)
-        return ["try:", *indent(lines), f"except {kind}:", "    log.append('gen')"]
-
-    # Coroutines.
-
-    def awaiting(self, scope: Scope) -> Lines:
-        v = self.fresh("v")
-        times = self.below(4)
-        body = self.block(scope.inside(4, in_loop=True, ints=(v, *scope.ints)), 2)
-        options = [
-            [f"b = await Tick({times})"],
-            [f"c += await Tick(a % 3)"],
-            [f"async for {v} in Stream({times}):", *indent(body)],
-            [f"async for {v} in poured({times}):", *indent(body)],
-            [f"xs = [{v} async for {v} in Stream({times}) if {v} != b]"],
-            [f"xs = [await Tick({v} % 2) for {v} in range({times})]"],
-            [f"d = {{{v}: await Tick(1) async for {v} in poured({times})}}"],
-            ["b = await Lost.__new__(Lost)"],
-        ]
-        return one_of(self.chooser, options)

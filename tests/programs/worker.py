@@ -80,8 +80,7 @@ def _work(job: dict[str, Any]) -> list[str]:
     if "workload" in job:
         from bench.workloads import small_call
 
-        call = small_call(job["workload"])
-        return differences(lambda: call)
+        return differences(lambda: small_call(job["workload"]))
     from programs.picked import picked_call
 
     call = picked_call(job["picked"])
@@ -120,9 +119,10 @@ def _child(work: Callable[[], list[str]], writing: int) -> None:
 
 
 def main() -> None:
-    import programs.compare
     # What generated programs import is rewritten once here, not in each child.
-    import asyncio, contextlib, dataclasses, functools, threading  # noqa: E401, F401
+    import asyncio  # noqa: F401
+
+    import programs.compare
 
     programs.compare.warm_up()
     answers = os.dup(1)

@@ -10,21 +10,25 @@ traceback.
 
 from __future__ import annotations
 
+import contextlib
 import importlib.util
 import os
+import sys
 from collections.abc import Callable, Iterator
+from pathlib import Path
 
 import pytest
 from hypothesis import HealthCheck, Phase, given, settings
+
 from programs import picked
 from programs.strategy import programs
 from programs.worker import Worker
 from referee import referee
-
 from steplaw.tally import count, counting
 
 pytestmark = pytest.mark.skipif(not hasattr(os, "fork"), reason="each program runs in a fork")
 
+KEPT = Path(picked.__file__).parent / "kept"
 SHARE = int(os.environ.get("STEPLAW_PROGRAMS", "60"))
 Workers = Callable[[str], Worker]
 
@@ -50,6 +54,8 @@ def test_picked_call(name: str, workers: Workers) -> None:
     package = picked.NEEDS.get(name, "")
     if package and importlib.util.find_spec(package) is None:
         pytest.skip(f"{package} is not installed")
+    if package == "sympy" and SHARE <= 60:
+        pytest.skip("takes long to rewrite: runs when STEPLAW_PROGRAMS asks for more")
     assert workers(package).differences(picked=name) == []
 
 
@@ -70,6 +76,11 @@ def plain_worker() -> Iterator[Worker]:
 @given(source=programs())
 def test_generated_program(plain_worker: Worker, source: str) -> None:
     assert plain_worker.differences(source=source) == []
+
+
+@pytest.mark.parametrize("kept", sorted(KEPT.glob("*.txt")), ids=lambda path: path.stem)
+def test_program_that_once_differed(plain_worker: Worker, kept: Path) -> None:
+    assert plain_worker.differences(source=kept.read_text()) == []
 
 
 def test_a_wrong_count_is_noticed() -> None:
@@ -112,6 +123,11 @@ def _reached(n: int = 0) -> int:
         return n
 
 
+@pytest.mark.xfail(
+    sys.version_info < (3, 12),
+    reason="3.11 counts calls of C functions, and so the recorder, towards the recursion limit",
+    strict=True,
+)
 def test_recursion_goes_as_deep_under_probes() -> None:
     plain = _reached()
     with counting():
@@ -126,10 +142,7 @@ def test_exception_of_the_call_is_raised_and_counted() -> None:
     reported = referee(work)
     with pytest.raises(LookupError, match="no berth"):
         count(work)
-    with counting() as counter:
-        try:
-            work()
-        except LookupError:
-            pass
+    with counting() as counter, contextlib.suppress(LookupError):
+        work()
     own = [f for f in counter.tally.functions if f.name.endswith("work")]
     assert [f.steps for f in own] == [reported.total]

@@ -11,13 +11,15 @@ from steplaw.tally.model import FunctionCount, LineCount, Tally
 from steplaw.tally.snapshot import CodeCounts
 
 
-def tally_of(counts: Sequence[CodeCounts]) -> Tally:
+def tally_of(counts: Sequence[CodeCounts], notes: Sequence[str] = ()) -> Tally:
     """Add up the counts of all code objects.
 
     Parameters
     ----------
     counts : sequence of CodeCounts
         One for each code object that ran.
+    notes : sequence of str
+        What keeps the counts from being exact.
 
     Returns
     -------
@@ -57,4 +59,5 @@ def tally_of(counts: Sequence[CodeCounts]) -> Tally:
             )
         ),
         lines=tuple(LineCount(file, line, *n) for (file, line), n in sorted(lines.items())),
+        notes=tuple(dict.fromkeys(notes)),
     )

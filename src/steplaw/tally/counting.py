@@ -11,6 +11,7 @@ from steplaw.tally.install import Installation
 from steplaw.tally.model import Tally
 from steplaw.tally.registry import Registry
 from steplaw.tally.snapshot import CodeCounts, Snapshot, counts_between
+from steplaw.tally.waiting import Waiting
 
 _REGISTRY = Registry()
 
@@ -22,17 +23,20 @@ class Counter:
     ----------
     codes : list of CodeCounts
         Exact counts by code object.
+    notes : list of str
+        What keeps them from being exact.
     """
 
     def __init__(self) -> None:
         self.codes: list[CodeCounts] = []
+        self.notes: list[str] = []
         self._tally: Tally | None = None
 
     @property
     def tally(self) -> Tally:
         """The tally of the stretch."""
         if self._tally is None:
-            self._tally = tally_of(self.codes)
+            self._tally = tally_of(self.codes, self.notes)
         return self._tally
 
     @property
@@ -67,12 +71,8 @@ class Counter:
 class counting:
     """Count all Python code that runs in a ``with`` block.
 
-    Examples
-    --------
-    >>> with counting() as counter:
-    ...     total = sum(k * k for k in range(10))
-    >>> counter.tally.operations["arithmetic"]
-    10
+    Functions that run are counted, not the frame that holds the ``with`` block itself: its code
+    was under way before.
     """
 
     def __init__(self) -> None:
@@ -81,6 +81,7 @@ class counting:
     def __enter__(self) -> Counter:
         self._counter = Counter()
         self._installation.enter()
+        self._waiting = Waiting(_REGISTRY)
         self._before = Snapshot(_REGISTRY)
         return self._counter
 
@@ -92,6 +93,11 @@ class counting:
     ) -> None:
         after = Snapshot(_REGISTRY)
         self._installation.leave()
+        self._counter.notes = [
+            *self._before.unsettled,
+            *after.unsettled,
+            *self._waiting.moved(),
+        ]
         self._counter.codes = list(counts_between(self._before, after))
 
 

@@ -68,6 +68,9 @@ class Tally:
         By function, largest first.
     lines : tuple of LineCount
         By file and line.
+    notes : tuple of str
+        What keeps the counts from being exact; empty but for threads and generators that were
+        under way when counting began or ended.
     """
 
     steps: int
@@ -75,6 +78,7 @@ class Tally:
     operations: Mapping[str, int]
     functions: tuple[FunctionCount, ...] = ()
     lines: tuple[LineCount, ...] = ()
+    notes: tuple[str, ...] = ()
 
     def as_json(self) -> dict[str, Any]:
         """Give the tally as plain JSON values."""
@@ -90,6 +94,7 @@ class Tally:
                 {"file": x.file, "line": x.line, "frequency": x.frequency, "steps": x.steps}
                 for x in self.lines
             ],
+            **({"notes": list(self.notes)} if self.notes else {}),
         }
 
     @classmethod
@@ -101,4 +106,5 @@ class Tally:
             operations=data["operations"],
             functions=tuple(FunctionCount(**f) for f in data["functions"]),
             lines=tuple(LineCount(**x) for x in data["lines"]),
+            notes=tuple(data.get("notes", ())),
         )

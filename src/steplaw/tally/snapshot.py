@@ -31,9 +31,10 @@ class Snapshot:
     that of an exception, so that the counts up to it are exact.
     """
 
-    __slots__ = ("readings",)
+    __slots__ = ("readings", "unsettled")
 
     def __init__(self, registry: Registry) -> None:
+        self.unsettled: list[str] = []
         running = _running_frames(registry)
         self.readings: dict[Probed, Reading] = {}
         for probed in registry.probed:
@@ -43,7 +44,21 @@ class Snapshot:
                 left = dict(probed.left)
                 for offset in places or ():
                     left[offset] = left.get(offset, 0) + 1
+                    self._look_for_loops(probed, offset)
                 self.readings[probed] = (passes, left)
+
+
+    def _look_for_loops(self, probed: Probed, offset: int) -> None:
+        """Note the loops whose passes are known only at their end and that are under way."""
+        d = probed.graph.decoded
+        block = probed.graph.of[probed.origins[offset >> 1]]
+        for loop in probed.counted:
+            if block in loop.body:
+                line = d.lines[probed.graph.blocks[loop.head].first]
+                self.unsettled.append(
+                    f"the loop at {d.code.co_filename}:{line} was under way when counting began "
+                    "or ended: all its passes are counted where it was entered"
+                )
 
 
 def _running_frames(registry: Registry) -> dict[Probed, list[int]]:
@@ -93,7 +108,7 @@ class CodeCounts:
                 net[block] = net.get(block, 0) + n
             if d.ops[k] not in isa.SUSPENDED:
                 net[graph.of[k]] = net.get(graph.of[k], 0) - n
-        self.passes = sum(passes)
+        self.passes = probed.probe_passes(passes)
         self.edges, self.entered = probed.placement.solve(passes, net)
         self.instructions = self._instructions(exits)
         self.calls = self._calls()

@@ -1,0 +1,137 @@
+"""Loops over a `range` whose passes follow from the length of the range at their entry."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from steplaw.flow import isa
+from steplaw.flow.blocks import OUTSIDE, Blocks
+from steplaw.flow.effects import begins, depths
+
+_LOAD_GLOBAL, _CALL, _GET_ITER = (isa.OPMAP[n] for n in ("LOAD_GLOBAL", "CALL", "GET_ITER"))
+
+
+@dataclass(frozen=True, slots=True)
+class RangeLoop:
+    """A `for` over a call of `range` that is left at its end or by an exception alone.
+
+    Parameters
+    ----------
+    head : int
+        The block with its FOR_ITER.
+    body : frozenset of int
+        The blocks of the loop, its head included.
+    call : int
+        The instruction that begins the call of `range` (PRECALL on 3.11, otherwise CALL).
+    depth : int
+        Stack depth in the loop, its iterator included.
+    edge : int
+        The edge from FOR_ITER into the loop.
+    """
+
+    head: int
+    body: frozenset[int]
+    call: int
+    depth: int
+    edge: int
+
+    @property
+    def iterator(self) -> int:
+        """The GET_ITER behind the call."""
+        return self.call + (2 if isa.PRECALL >= 0 else 1)
+
+
+def range_loops(graph: Blocks) -> list[RangeLoop]:
+    """Find the loops over a range that need no probe inside.
+
+    Parameters
+    ----------
+    graph : Blocks
+        The flow graph.
+
+    Returns
+    -------
+    list of RangeLoop
+        In the order of the code.
+    """
+    if "range" not in graph.decoded.code.co_names:
+        return []
+    heads = [
+        (b, call)
+        for b, block in enumerate(graph.blocks)
+        if graph.decoded.ops[block.last] == isa.FOR_ITER and block.first == block.last
+        for call in [_range_call(graph, b)]
+        if call is not None
+    ]
+    if not heads:
+        return []
+    depth = depths(graph)
+    loops = []
+    for head, call in heads:
+        body = _body(graph, head)
+        level = depth[head]
+        if body is None or level is None or not _closed(graph, head, body):
+            continue
+        edge = next(n for n, e in enumerate(graph.edges) if e.source == head and e.kind == "fall")
+        loops.append(RangeLoop(head, body, call, level, edge))
+    return loops
+
+
+def _range_call(graph: Blocks, head: int) -> int | None:
+    """Give the instruction that begins the call of `range` right before a loop, if it is one."""
+    d = graph.decoded
+    get_iter = graph.blocks[head].first - 1
+    call = get_iter - 1
+    if call < 1 or d.ops[get_iter] != _GET_ITER or d.ops[call] != _CALL:
+        return None
+    if graph.of[call] != graph.of[get_iter] or graph.of[call] != head - 1:
+        return None
+    start = call - 1 if isa.PRECALL >= 0 else call
+    first = begins(d, graph.blocks[head - 1].first, start, d.args[call]) if d.args[call] else start
+    if first is None or first < 1:
+        return None
+    load = first - 1
+    named = d.ops[load] == _LOAD_GLOBAL and d.args[load] & 1
+    if named and d.code.co_names[d.args[load] >> 1] == "range":
+        return start
+    return None
+
+
+def _body(graph: Blocks, head: int) -> frozenset[int] | None:
+    """Give the blocks that lead back to a loop's head without passing it, None for no such loop."""
+    before: list[set[int]] = [set() for _ in graph.blocks]
+    for edge in graph.edges:
+        if edge.source >= 0 and edge.target >= 0:
+            before[edge.target].add(edge.source)
+    for k, b in enumerate(graph.of):
+        handler = graph.handler_block(k)
+        if handler >= 0 and b >= 0:
+            before[handler].add(b)
+    entries = [b for b in before[head] if b < head]
+    if entries != [head - 1] or any(
+        e.target == head and e.source == head - 1 and e.kind != "fall" for e in graph.edges
+    ):
+        return None
+    body = {head}
+    todo = [b for b in before[head] if b > head]
+    while todo:
+        b = todo.pop()
+        if b not in body:
+            if b < head:
+                return None
+            body.add(b)
+            todo.extend(before[b])
+    return frozenset(body)
+
+
+def _closed(graph: Blocks, head: int, body: frozenset[int]) -> bool:
+    """Whether a loop is left at its head or by an exception alone, and never suspended."""
+    for edge in graph.edges:
+        if edge.source == OUTSIDE and edge.target in body:
+            return False
+        leaves = edge.source in body and edge.target not in body
+        if leaves and edge.source != head and edge.kind not in ("raise", "pass"):
+            return False
+        if edge.target in body and edge.source not in body and edge.target != head:
+            return False
+    return len(body) > 1

@@ -1,0 +1,304 @@
+"""The instructions of one code object, written anew with its probes and recorders.
+
+Fresh exceptions leave a block in its middle. A recorder at each handler, and one more table entry
+around the whole body, keep the instruction that was left (`tb_lasti`) in a dictionary; it runs in
+C alone and costs nothing while nothing is raised.
+"""
+
+from __future__ import annotations
+
+from collections import _count_elements  # type: ignore[attr-defined]
+from collections.abc import Iterable, Mapping
+from functools import partial
+from operator import attrgetter
+
+from steplaw.flow import isa
+from steplaw.flow.blocks import Blocks
+from steplaw.flow.ranges import RangeLoop
+from steplaw.tally.assemble import Assembly, Cover
+from steplaw.tally.fused import unsafe_pairs
+from steplaw.tally.placement import Unplaceable
+from steplaw.tally.trips import Trips, TripWriter
+
+_LASTI = attrgetter("tb_lasti")
+_TRACEBACK = BaseException.__dict__["__traceback__"].__get__
+_OP = isa.OPMAP
+#: What takes a probe's iterator and item off the stack: END_FOR of 3.12 takes both.
+_DROP = (isa.END_FOR,) if isa.VERSION == (3, 12) else (_OP["POP_TOP"], _OP["POP_TOP"])
+
+
+class Writer:
+    """Writes one code object.
+
+    Parameters
+    ----------
+    graph : Blocks
+        Its flow graph.
+    consts : tuple
+        Its constants, nested code objects already in their probed form.
+    probes : mapping of int to iterator
+        The probe of each probed edge.
+    counted : iterable of (RangeLoop, Trips)
+        Loops whose trip count takes the place of a probe.
+    left : dict
+        Where recorders keep the places of fresh exceptions.
+
+    Attributes
+    ----------
+    consts, names : list
+        Constants and names of the new code object.
+    base : int
+        Items that the probe of a call leaves at the bottom of the stack.
+    """
+
+    def __init__(
+        self,
+        graph: Blocks,
+        consts: tuple[object, ...],
+        probes: Mapping[int, object],
+        counted: Iterable[tuple[RangeLoop, Trips]],
+        left: dict[int, int],
+    ) -> None:
+        self.graph = graph
+        self.decoded = graph.decoded
+        self.out = Assembly()
+        self.consts = list(consts)
+        self.names = list(self.decoded.code.co_names)
+        n = len(graph.blocks)
+        # Labels: b for block b, n + b for the recorder before handler block b, 2n for the recorder
+        # around the body, and what `label` gives.
+        self._outer_label = 2 * n
+        self._last_label = 2 * n
+        self._stubs: list[tuple[int, int, int]] = []
+        self._late: list[int] = []
+        self._handlers = {h.target: h for h in self.decoded.handlers if h is not None}
+        self._first_resume = self.decoded.ops.index(isa.RESUME)
+        self._start = graph.of[self._first_resume]
+        self._apart = unsafe_pairs(graph)
+        self._recorder_consts = (partial(_count_elements, left), _LASTI, _TRACEBACK)
+        self._recorder_places: list[int] = []
+        loops = list(counted)
+        whole = {loop.edge for loop, _ in loops}
+        self._probe_const = {n: self.const(it) for n, it in probes.items() if n not in whole}
+        self._at_start: int | None = None
+        self._place()
+        self.base = 0 if self._at_start is None else 2
+        self._loops = [TripWriter(loop, trips, self) for loop, trips in loops]
+        self._calls = {writer.loop.call: writer for writer in self._loops}
+        self._iterators = {writer.loop.iterator: writer for writer in self._loops}
+        self._inside = self._loops_by_block()
+
+    def const(self, value: object) -> int:
+        """Add a constant and give its number."""
+        self.consts.append(value)
+        return len(self.consts) - 1
+
+    def name(self, name: str) -> int:
+        """Give the number of a name, added if need be."""
+        if name not in self.names:
+            self.names.append(name)
+        return self.names.index(name)
+
+    def label(self) -> int:
+        """Give a new label."""
+        self._last_label += 1
+        return self._last_label
+
+    def _loops_by_block(self) -> dict[int, list[TripWriter]]:
+        """Give the counted loops around each block, the innermost first."""
+        inside: dict[int, list[TripWriter]] = {}
+        for writer in sorted(self._loops, key=lambda w: len(w.loop.body)):
+            for b in writer.loop.body:
+                inside.setdefault(b, []).append(writer)
+        return inside
+
+    def _place(self) -> None:
+        """Sort the probed edges by the place where their probe goes."""
+        n = len(self.graph.blocks)
+        inflow = [0] * n
+        for edge in self.graph.edges:
+            if edge.target >= 0:
+                inflow[edge.target] += 1
+        for target in self._handlers:
+            inflow[self.graph.of[target]] += 1
+        self._head: list[list[int]] = [[] for _ in range(n)]
+        self._tail: list[list[int]] = [[] for _ in range(n)]
+        self._after: list[list[int]] = [[] for _ in range(n)]
+        self._land: dict[int, int] = {}
+        self._stub_of: dict[int, int] = {}
+        for number in self._probe_const:
+            edge = self.graph.edges[number]
+            if edge.kind == "enter" and edge.target == self._start:
+                self._at_start = number
+            elif edge.kind == "enter":
+                self._head[edge.target].append(number)
+            elif edge.kind in ("leave", "raise", "goto"):
+                self._tail[edge.source].append(number)
+            elif edge.kind == "fall":
+                self._after[edge.source].append(number)
+            elif edge.kind == "land":
+                self._land[edge.target] = number
+            elif inflow[edge.target] == 1:
+                self._head[edge.target].append(number)
+            else:
+                self._stub_of[edge.source] = number
+        self._landings: dict[int, int] = {}
+        for edge in self.graph.edges:
+            if edge.kind == "land":
+                self._landings[edge.target] = self.label()
+
+    def _cover(self, k: int) -> Cover | None:
+        """Give where an exception of an original instruction goes."""
+        handler = self.decoded.handlers[k]
+        op = self.decoded.ops[k]
+        quiet = op in isa.ALWAYS_RAISE or op in isa.MAY_RERAISE
+        target: Cover | None
+        if handler is not None:
+            block = self.graph.of[handler.target]
+            label = block if quiet else len(self.graph.blocks) + block
+            target = label, handler.depth + self.base, handler.lasti
+        elif quiet or k < self._first_resume:
+            block, target = -1, None
+        else:
+            block, target = -1, (self._outer_label, self.base, True)
+        for writer in reversed(self._inside.get(self.graph.of[k], ())):
+            if block not in writer.loop.body:
+                target = writer.leaving(target)
+        return target
+
+    def write(self) -> Assembly:
+        """Write all of it and settle its layout."""
+        graph = self.graph
+        n = len(graph.blocks)
+        for b, block in enumerate(graph.blocks):
+            if block.first in self._handlers:
+                if self._falls_into(b):
+                    self._late.append(b)
+                else:
+                    self.out.mark(n + b)
+                    self._recorder()
+            if b in self._landings:
+                if self._falls_into(b):
+                    raise Unplaceable("a block falls into the target of SEND")
+                self.out.mark(self._landings[b])
+                if b in self._land:
+                    self._probe(self._land[b], None)
+            self.out.mark(b)
+            self._block(b)
+        for label, number, source in self._stubs:
+            self._stub(label, number, source)
+        # Outer loops last: what leaves an inner one may go on to the way out of an outer one.
+        for writer in sorted(self._loops, key=lambda w: len(w.loop.body)):
+            writer.late(self._cover(writer.loop.call))
+        for b in self._late:
+            self.out.mark(n + b)
+            self._recorder()
+            self.out.emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=b)
+        self.out.mark(self._outer_label)
+        self._recorder()
+        self.out.emit(_OP["RERAISE"], 1)
+        self.out.layout()
+        return self.out
+
+    def _falls_into(self, b: int) -> bool:
+        if b == 0:
+            return False
+        last = self.decoded.ops[self.graph.blocks[b - 1].last]
+        return last not in isa.GOTO | isa.RETURN | isa.ALWAYS_RAISE
+
+    def _block(self, b: int) -> None:
+        block, d, out = self.graph.blocks[b], self.decoded, self.out
+        head = block.first + block.setup
+        for k in range(block.first, block.last + 1):
+            cover = self._cover(k)
+            if k == head:
+                self._enter(b)
+                self._probes(self._head[b], cover)
+            if k == block.last:
+                self._probes(self._tail[b], cover)
+            if k in self._calls:
+                self._calls[k].guard(cover)
+            if d.ops[k] == isa.YIELD_VALUE and k and d.ops[k - 1] == isa.SEND:
+                self._landing(k - 1)
+            if k in self._apart:
+                out.emit(_OP["NOP"], cover=cover)
+            jump = d.targets[k]
+            if jump >= 0:
+                if b in self._stub_of:
+                    label = self.label()
+                    self._stubs.append((label, self._stub_of[b], b))
+                else:
+                    label = self.graph.of[jump]
+                out.emit(d.ops[k], 0, jump=label, origin=k, cover=cover)
+            else:
+                out.emit(d.ops[k], d.args[k], origin=k, cover=cover)
+            if k + 1 in self._iterators:
+                self._iterators[k + 1].entered(cover)
+        if head > block.last:
+            self._enter(b)
+            self._probes(self._head[b], self._cover(block.last))
+        self._probes(self._after[b], self._cover(block.last))
+
+    def _landing(self, send: int) -> None:
+        """Write, right before YIELD_VALUE, the distance that 3.11 moves a frame on by a throw."""
+        landing = self._landings.get(self.graph.of[self.decoded.targets[send]])
+        if landing is not None:
+            self.out.emit(_OP["NOP"], jump=landing)
+
+    def _enter(self, b: int) -> None:
+        """Write the probe of a call: what it leaves on the stack stays there until the return."""
+        if b == self._start and self._at_start is not None:
+            self.out.emit(_OP["LOAD_CONST"], self._probe_const[self._at_start])
+            self.out.emit(isa.FOR_ITER, 0)
+
+    def _probes(self, numbers: list[int], cover: Cover | None) -> None:
+        for number in numbers:
+            self._probe(number, cover)
+
+    def _probe(self, number: int, cover: Cover | None) -> None:
+        out = self.out
+        out.emit(_OP["LOAD_CONST"], self._probe_const[number], cover=cover)
+        out.emit(isa.FOR_ITER, 0, cover=cover)
+        for op in _DROP:
+            out.emit(op, cover=cover)
+
+    def _stub(self, label: int, number: int, source: int) -> None:
+        """Write a probe out of line, for a jump to a block that others reach as well."""
+        self.out.mark(label)
+        last = self.graph.blocks[source].last
+        if self.decoded.ops[last] == isa.FOR_ITER:
+            first = self.decoded.targets[last]
+            for k in range(first, first + isa.FOR_ITER_SKIPS):
+                self.out.emit(self.decoded.ops[k], self.decoded.args[k])
+        self._probe(number, None)
+        target = self.graph.edges[number].target
+        self.out.emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=target)
+
+    def _recorder(self) -> None:
+        """Write what keeps the place of a fresh exception, the exception on top of the stack."""
+        if not self._recorder_places:
+            self._recorder_places = [self.const(value) for value in self._recorder_consts]
+        emit = self.out.emit
+        for place in self._recorder_places:
+            self.push(place)
+        emit(_OP["COPY"], 7)
+        self.call(1)
+        self.call(1)
+        emit(_OP["BUILD_TUPLE"], 1)
+        self.call(1)
+        emit(_OP["POP_TOP"])
+
+    def push(self, place: int) -> None:
+        """Write what puts a constant on the stack to be called."""
+        if isa.VERSION >= (3, 13):
+            self.out.emit(_OP["LOAD_CONST"], place)
+            self.out.emit(_OP["PUSH_NULL"])
+        else:
+            self.out.emit(_OP["PUSH_NULL"])
+            self.out.emit(_OP["LOAD_CONST"], place)
+
+    def call(self, arguments: int) -> None:
+        """Write a call."""
+        if isa.PRECALL >= 0:
+            self.out.emit(isa.PRECALL, arguments)
+        self.out.emit(_OP["CALL"], arguments)
