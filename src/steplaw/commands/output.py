@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+import os
 import sys
 from pathlib import Path
+from typing import IO
 
 from steplaw.errors import CallError
 from steplaw.record import Record
@@ -12,7 +14,9 @@ from steplaw.record import Record
 def deliver(
     record: Record, json_path: str | None, page_path: str | None = None, *, error: bool = False
 ) -> None:
-    """Write a record to where it was asked for and show its sheet.
+    """Show a record's sheet and write the record to where it was asked for.
+
+    The sheet comes first, so that a file that cannot be written loses nothing of it.
 
     Parameters
     ----------
@@ -26,14 +30,44 @@ def deliver(
         Whether the sheet goes to standard error in any case.
     """
     if json_path == "-":
-        sys.stdout.write(record.to_json())
-    elif json_path is not None:
-        record.write(json_path)
+        say(record.to_json())
+    show(record, error=error or json_path == "-")
+    if json_path not in (None, "-"):
+        record.write(str(json_path))
     if page_path is not None:
         from steplaw.faces import render
 
         write(page_path, str(render(record, "page")))
-    show(record, error=error or json_path == "-")
+
+
+def must_be_writable(*paths: str | None) -> None:
+    """Find out before long work whether its result can be written.
+
+    Parameters
+    ----------
+    *paths : str or None
+        As given after ``--json`` or ``--page``; None and ``-`` are no files.
+
+    Raises
+    ------
+    CallError
+        If one of them cannot be opened.
+    """
+    for path in paths:
+        if path in (None, "-"):
+            continue
+        file = Path(str(path))
+        if file.exists() and not file.is_file() and not file.is_dir():
+            continue  # a pipe or a device would be changed by opening it
+        was_there = file.exists()
+        try:
+            with file.open("ab"):
+                pass
+        except OSError as error:
+            hint = "give a path in a folder that can be written"
+            raise CallError(f"cannot write {path}: {error.strerror or error}", hint) from None
+        if not was_there:
+            file.unlink()
 
 
 def show(record: Record, *, error: bool = False) -> None:
@@ -48,9 +82,44 @@ def show(record: Record, *, error: bool = False) -> None:
     """
     from rich.console import Console
 
-    from steplaw.faces import terminal
+    from steplaw.faces.terminal import show as show_sheet
+    from steplaw.faces.terminal_tally import show_tally
 
-    terminal.show(record, Console(stderr=error, highlight=False))
+    class Screen(Console):
+        def on_broken_pipe(self) -> None:
+            self.quiet = True
+            nobody_reads(self.file)
+
+    face = show_tally if record["schema"] == "steplaw.tally/1" else show_sheet
+    face(record, Screen(stderr=error, highlight=False))
+
+
+def say(text: str) -> None:
+    """Write a text to standard output, for as long as someone reads it.
+
+    Parameters
+    ----------
+    text : str
+        Written as it is.
+    """
+    try:
+        sys.stdout.write(text)
+        sys.stdout.flush()
+    except BrokenPipeError:
+        nobody_reads(sys.stdout)
+
+
+def nobody_reads(stream: IO[str]) -> None:
+    """Send to nowhere what a reader that has gone would have got.
+
+    Parameters
+    ----------
+    stream : file
+        Standard output or error.
+    """
+    nowhere = os.open(os.devnull, os.O_WRONLY)
+    os.dup2(nowhere, stream.fileno())
+    os.close(nowhere)
 
 
 def write(path: str, text: str) -> None:
@@ -64,4 +133,5 @@ def write(path: str, text: str) -> None:
     try:
         Path(path).write_text(text, encoding="utf-8")
     except OSError as error:
-        raise CallError(f"cannot write {path}: {error.strerror}", "give another path") from None
+        hint = "give a path in a folder that can be written"
+        raise CallError(f"cannot write {path}: {error.strerror or error}", hint) from None

@@ -121,7 +121,34 @@ def _body(graph: Blocks, head: int) -> frozenset[int] | None:
                 return None
             body.add(b)
             todo.extend(before[b])
+    _add_raising(graph, head, body, before)
     return frozenset(body)
+
+
+def _add_raising(graph: Blocks, head: int, body: set[int], before: list[set[int]]) -> None:
+    """Add the blocks that can only be reached from the loop and can only raise in the end."""
+    after: list[set[int]] = [set() for _ in graph.blocks]
+    ends: set[int] = set()
+    for edge in graph.edges:
+        if edge.source >= 0 and edge.kind not in ("raise", "pass"):
+            after[edge.source].add(edge.target)
+        elif edge.source >= 0:
+            ends.add(edge.source)
+    done = {e.target for e in graph.edges if e.source == head and e.kind == "branch"}
+    while True:
+        more = {
+            b
+            for b in range(len(graph.blocks))
+            if b not in body
+            and b not in done
+            and before[b]
+            and before[b] <= body | {b}
+            and after[b] <= body
+            and (after[b] or b in ends)
+        }
+        if not more:
+            break
+        body |= more
 
 
 def _closed(graph: Blocks, head: int, body: frozenset[int]) -> bool:

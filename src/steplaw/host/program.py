@@ -71,6 +71,11 @@ def main(baseline: Baseline) -> None:
 def _forget_imports(baseline: Baseline) -> None:
     """Let the program import anew what steplaw alone has imported so far."""
     modules, finders = baseline
+    lines = sys.modules.get("linecache")
+    if lines is not None:
+        # 3.13 keeps the text of ``-c`` for tracebacks, under the name that eval'd code has too.
+        lines.cache.pop("<string>", None)
+        getattr(lines, "_interactive_cache", {}).clear()
     for name in [n for n in sys.modules if n not in modules]:
         if name != "steplaw" and not name.startswith("steplaw."):
             del sys.modules[name]
@@ -121,7 +126,8 @@ def _write(path: str, before: Snapshot, after: Snapshot) -> None:
     from steplaw.tally.assembled import tally_of
     from steplaw.tally.snapshot import counts_between
 
-    tally = tally_of(list(counts_between(before, after)))
+    notes = [*before.unsettled, *after.unsettled]
+    tally = tally_of(list(counts_between(before, after)), notes)
     with open(path, "w", encoding="utf-8") as file:  # noqa: PTH123
         json.dump(tally.as_json(), file)
 

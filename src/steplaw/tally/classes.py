@@ -11,6 +11,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from steplaw.flow import isa
+from steplaw.flow.decode import Decoded
 from steplaw.tally.snapshot import CodeCounts
 
 CLASSES = (
@@ -24,13 +25,10 @@ CLASSES = (
     "append",
     "iteration",
     "unpack",
-    "name_write",
     "raise",
     "yield",
     "import",
 )
-
-_COMPREHENSIONS = ("<listcomp>", "<setcomp>", "<dictcomp>")
 
 _BY_NAME = {
     "arithmetic": "BINARY_OP UNARY_NEGATIVE UNARY_INVERT UNARY_POSITIVE",
@@ -73,5 +71,25 @@ def operations(counts: CodeCounts) -> Iterator[tuple[str, int]]:
     for k, n in enumerate(counts.instructions):
         if n:
             operation = CLASS_OF.get(decoded.ops[k])
-            if operation is not None:
+            if operation is not None and not _of_the_compiler(decoded, k):
                 yield operation, n
+
+
+def _of_the_compiler(decoded: Decoded, k: int) -> bool:
+    """Whether a call or tuple is there only because a function is made on the spot.
+
+    Comprehensions are called on 3.11 and inlined from 3.12 on, closures likewise.
+    """
+    ops = decoded.ops
+    if ops[k] == _CALL and decoded.args[k] == 0:
+        before = k - 2 if isa.PRECALL >= 0 else k - 1
+        return before >= 0 and ops[before] in _ITERATED
+    if ops[k] == _BUILD_TUPLE:
+        return k + 2 < len(ops) and ops[k + 2] == _MAKE_FUNCTION
+    return False
+
+
+_CALL, _BUILD_TUPLE, _MAKE_FUNCTION = (
+    isa.OPMAP[name] for name in ("CALL", "BUILD_TUPLE", "MAKE_FUNCTION")
+)
+_ITERATED = (isa.OPMAP["GET_ITER"], isa.OPMAP["GET_AITER"])

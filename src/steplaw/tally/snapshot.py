@@ -47,7 +47,6 @@ class Snapshot:
                     self._look_for_loops(probed, offset)
                 self.readings[probed] = (passes, left)
 
-
     def _look_for_loops(self, probed: Probed, offset: int) -> None:
         """Note the loops whose passes are known only at their end and that are under way."""
         d = probed.graph.decoded
