@@ -5,12 +5,21 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
+    from steplaw.expression import args
+    from steplaw.job import audit
+    from steplaw.record import AuditRecord
     from steplaw.tally.counting import count, counting
 
 __version__ = "0.1.0"
-__all__ = ["__version__", "count", "counting"]
+__all__ = ["AuditRecord", "__version__", "args", "audit", "count", "counting"]
 
-_HOMES = {"count": "steplaw.tally.counting", "counting": "steplaw.tally.counting"}
+_HOMES = {
+    "AuditRecord": "steplaw.record",
+    "args": "steplaw.expression",
+    "audit": "steplaw.job",
+    "count": "steplaw.tally.counting",
+    "counting": "steplaw.tally.counting",
+}
 
 
 def __getattr__(name: str) -> Any:

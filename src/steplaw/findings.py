@@ -10,8 +10,9 @@ from typing import Any
 from steplaw import series
 from steplaw.errors import CallError
 from steplaw.host.runner import Run
-from steplaw.law import find_law
+from steplaw.law import find_law, order
 from steplaw.law.model import Law, Observation
+from steplaw.repeat import Repeat
 from steplaw.sweep import Sweep
 
 #: Lines outside the subject's file are listed from this share of the steps on.
@@ -29,8 +30,8 @@ class Findings:
         The figure that the study is about.
     loaded : mapping
         The subject, as the host describes it.
-    changed : set of (str, int)
-        Lines whose counts differ between equal runs.
+    repeat : Repeat or None
+        What differed between equal runs: no law is claimed for that.
     """
 
     def __init__(
@@ -38,12 +39,14 @@ class Findings:
         sweep: Sweep,
         figure: str,
         loaded: Mapping[str, Any],
-        changed: set[tuple[str, int]],
+        repeat: Repeat | None,
     ) -> None:
         self.sweep = sweep
         self.name = figure
         self.loaded = loaded
-        self.changed = changed
+        self.changed = repeat.changed if repeat is not None else set()
+        self.unsteady = repeat is not None and not repeat.holds
+        self._orders: tuple[Any, ...] | None = None
         self._known: dict[tuple[Observation, ...], Law] = {}
         self._lines = series.of_many(sweep, _line_values)
         self._functions = series.of_many(sweep, _function_values)
@@ -60,8 +63,24 @@ class Findings:
         key = tuple(observations)
         law = self._known.get(key)
         if law is None:
-            law = self._known[key] = find_law(observations, self.sweep.names)
+            law = self._known[key] = find_law(
+                observations, self.sweep.names, orders=self._exact_orders()
+            )
         return law
+
+    def _exact_orders(self) -> tuple[Any, ...]:
+        """Give the orders of growth of the lines whose frequency has an exact law."""
+        if self._orders is None:
+            self._orders = ()
+            laws = [
+                self._law(values)
+                for key, values in self._lines.items()
+                if key[2] == "frequency" and all(o.variance == 0 for o in values)
+            ]
+            self._orders = tuple(
+                dict.fromkeys(order(law) for law in laws if law.grade in ("exact", "proved"))
+            )
+        return self._orders
 
     def _check_line(self) -> None:
         if not self.name.startswith("line:") or not self.sweep.runs:
@@ -83,7 +102,7 @@ class Findings:
         return lambda run: run.tally.operations.get(self.name, 0)
 
     def _figure_law(self) -> Law:
-        changed = bool(self.changed)
+        changed = self.unsteady
         if self.name.startswith("line:"):
             changed = (self.loaded["file"], int(self.name[5:])) in self.changed
         return self._law(series.of(self.sweep, self._read()), changed)
@@ -94,7 +113,7 @@ class Findings:
         observations = series.of(self.sweep, read)
         fixed = all(o.variance == 0 for o in observations)
         by_law: dict[str, Any] = {"least": None, "most": None, "variance": None}
-        if (self.sweep.whole or fixed) and observations and not self.changed:
+        if (self.sweep.whole or fixed) and observations and not self.unsteady:
             by_law = {
                 "least": self._law(_single(observations, lambda o: Fraction(o.least))).as_json(),
                 "most": self._law(_single(observations, lambda o: Fraction(o.most))).as_json(),
@@ -143,7 +162,7 @@ class Findings:
 
     def laws(self) -> dict[str, Any]:
         """Give the record's ``laws``."""
-        changed = bool(self.changed)
+        changed = self.unsteady
         operations = series.of_many(self.sweep, lambda r: r.tally.operations)
         exact, data = series.parts(self.sweep)
         split = any(o.value for o in data)

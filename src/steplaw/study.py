@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
+import shlex
 from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
-from pathlib import Path
 from typing import Any
 
 from steplaw import feed as feeds
@@ -12,6 +12,7 @@ from steplaw import subject as subjects
 from steplaw.errors import CallError
 from steplaw.feed import FeedSpec
 from steplaw.host.limits import Limits
+from steplaw.loading import under_way
 from steplaw.sizes import SizePlan, plan
 from steplaw.subject import SubjectRef
 from steplaw.tally.classes import CLASSES
@@ -114,18 +115,46 @@ def make_study(
     if limit_seconds <= 0 or limit_memory <= 0:
         raise CallError("a limit must be above 0", "as in --limit-seconds 10 --limit-memory 2048")
     check_figure(figure)
+    if isinstance(sizes, int):
+        sizes = [sizes]
     asked = plan(sizes, True).points if _names_numbers(sizes) else ()
+    ref, spec = subject_ref(subject), feed_spec(feed, every)
     return Study(
-        subject=subject_ref(subject),
-        feed=feed_spec(feed, every),
+        subject=ref,
+        feed=spec,
         plan=plan(sizes, only_sizes),
         asked=tuple(asked),
         draws=draws,
         figure=figure,
         clock=clock,
         limits=Limits(float(limit_seconds), int(limit_memory)),
-        again=again,
+        again=again or _command(ref, spec, asked, only_sizes, draws, figure),
     )
+
+
+def _command(
+    ref: SubjectRef,
+    feed: FeedSpec | None,
+    asked: Sequence[Mapping[str, int]],
+    only_sizes: bool,
+    draws: int,
+    figure: str,
+) -> str:
+    """Give the command that makes the same audit as a call from Python."""
+    words = ["steplaw", "audit", str(ref)]
+    if feed is not None:
+        words += ["--every" if feed.kind == "every" else "--feed", feed.text]
+    values: dict[str, list[str]] = {}
+    for at in asked:
+        for name, value in at.items():
+            if str(value) not in values.setdefault(name, []):
+                values[name].append(str(value))
+    for name, listed in values.items():
+        words += ["--sizes", f"{name}={','.join(listed)}"]
+    words += ["--only-sizes"] * only_sizes
+    words += ["--draws", str(draws)] * (draws != DRAWS)
+    words += ["--figure", figure] * (figure != "steps")
+    return shlex.join(words)
 
 
 def _names_numbers(sizes: Any) -> bool:
@@ -141,6 +170,11 @@ def _names_numbers(sizes: Any) -> bool:
 
 def subject_ref(subject: str | Callable[..., Any]) -> SubjectRef:
     """Give the reference of a subject named or at hand."""
+    if under_way() is not None:
+        raise CallError(
+            f"an audit is begun while {under_way()} is being imported as the subject",
+            "put that call under: if __name__ == '__main__':",
+        )
     if isinstance(subject, str):
         return subjects.parse(subject)
     return subjects.from_function(subject).ref
@@ -154,11 +188,12 @@ def feed_spec(feed: str | Callable[..., Any] | None, every: str | None) -> FeedS
         return None
     if isinstance(feed, str):
         return feeds.parse_feed(feed)
-    try:
-        found = subjects.from_function(feed)
-    except CallError:
-        return feeds.from_callable(feed)
-    return FeedSpec("function", f"{Path(found.file)}:{found.name}")
+    if not callable(feed):
+        raise CallError(
+            f"a feed is an expression, FILE.py:FUNCTION or a function, not {feed!r}",
+            "as in feed='[rng.random() for _ in range(n)]'",
+        )
+    return feeds.from_callable(feed)
 
 
 def check_figure(figure: str) -> None:

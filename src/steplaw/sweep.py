@@ -9,7 +9,6 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
-from typing import Any
 
 from steplaw.host.limits import Failure
 from steplaw.host.runner import Run, RunFailed, Runner
@@ -100,19 +99,16 @@ def sweep(
     todo = [tuple(p[name] for name in plan.names) for p in plan.points]
     spent = 0
     for place, point in enumerate(todo):
-        predicted = _predict(result, point)
-        if point not in wanted and predicted is not None:
-            inputs = 1 if not every else _predicted_inputs(result, point)
-            times = draws if result.varies else 1
-            cost = predicted * inputs * times
-            if predicted > STEPS_A_RUN or spent + cost > STEPS_IN_ALL or inputs > INPUTS_A_SIZE:
-                result.left_out.append(point)
-                continue
-        at = result.at(point)
-        if report is not None:
-            report(at, spent, _rest(result, todo[place:]))
+        if point not in wanted and _is_too_long(result, point, draws, spent):
+            result.left_out.append(point)
+            continue
+        tell = _teller(report, result, todo[place:], draws, spent)
+        tell(0)
         try:
-            runs = _runs(runner, at, draws, every, result)
+            runs = _runs(runner, result.at(point), draws, result, tell)
+        except KeyboardInterrupt:
+            result.stopped = interrupted(result.at(point))
+            break
         except RunFailed as failed:
             if point in wanted or result.runs or failed.failure.kind not in ("raised", "feed"):
                 result.stopped = failed.failure
@@ -126,16 +122,57 @@ def sweep(
     return result
 
 
+def _teller(
+    report: Report | None, result: Sweep, todo: Sequence[Point], draws: int, spent: int
+) -> Callable[[int], None]:
+    """Give what reports the inputs of a size that have been run so far."""
+    if report is None:
+        return lambda inputs: None
+    a_run = _predict(result, todo[0]) or 0.0
+    rest = _rest(result, todo, draws)
+
+    def tell(inputs: int) -> None:
+        done = round(a_run * inputs)
+        report(result.at(todo[0]), spent + done, None if rest is None else max(rest - done, 0))
+
+    return tell
+
+
+def interrupted(at: Mapping[str, int]) -> Failure:
+    """Say that a person has stopped the audit.
+
+    Parameters
+    ----------
+    at : mapping of str to int
+        The size that was about to be done.
+    """
+    return Failure("interrupted", "was interrupted from the keyboard", dict(at))
+
+
 def _runs(
-    runner: Runner, at: Mapping[str, int], draws: int, every: bool, result: Sweep
+    runner: Runner,
+    at: Mapping[str, int],
+    draws: int,
+    result: Sweep,
+    tell: Callable[[int], None],
 ) -> list[Run]:
-    if every:
-        return runner.every(at)
+    if result.whole:
+        return runner.every(at, tell)
     runs = [runner.count(at, 0)]
     if runs[0].random:
         result.varies = True
-        runs += [runner.count(at, draw) for draw in range(1, draws)]
+        for draw in range(1, draws):
+            tell(draw)
+            runs.append(runner.count(at, draw))
     return runs
+
+
+def _is_too_long(result: Sweep, point: Point, draws: int, spent: int) -> bool:
+    a_run, inputs = _predict(result, point), _predicted_inputs(result, point, draws)
+    if a_run is None:
+        return False
+    too_many = result.whole and inputs > INPUTS_A_SIZE
+    return a_run > STEPS_A_RUN or spent + a_run * inputs > STEPS_IN_ALL or too_many
 
 
 def _mean(runs: Sequence[Run]) -> float:
@@ -174,7 +211,9 @@ def _accelerates(known: list[tuple[float, float]]) -> bool:
     return len(slopes) >= 2 and slopes[-1] > slopes[0] * 1.05
 
 
-def _predicted_inputs(result: Sweep, point: Point) -> float:
+def _predicted_inputs(result: Sweep, point: Point, draws: int) -> float:
+    if not result.whole:
+        return draws if result.varies else 1
     known = sorted((_extent(p), sum(r.times for r in runs)) for p, runs in result.runs.items())
     if len(known) < 2:
         return 1.0
@@ -183,42 +222,16 @@ def _predicted_inputs(result: Sweep, point: Point) -> float:
     if x <= x1 or x1 <= x0:
         return float(c1)
     ratio = max(c1 / max(c0, 1), 1.0)
-    return float(c1 * (ratio * 1.15) ** ((x - x1) / (x1 - x0)))
+    return c1 * math.exp(min((x - x1) / (x1 - x0) * math.log(ratio * 1.15), 60.0))
 
 
-def _rest(result: Sweep, todo: Sequence[Point]) -> int | None:
-    """Predict the steps still to run, by the law of growth found so far."""
+def _rest(result: Sweep, todo: Sequence[Point], draws: int) -> int | None:
+    """Predict the steps still to run, by the growth so far."""
     total = 0.0
     for point in todo:
-        predicted = _predict(result, point)
-        if predicted is None:
+        a_run = _predict(result, point)
+        if a_run is None:
             return None
-        if predicted <= STEPS_A_RUN:
-            total += predicted
+        if not _is_too_long(result, point, draws, int(total)):
+            total += a_run * _predicted_inputs(result, point, draws)
     return int(total)
-
-
-def unequal(first: Sequence[Run], second: Sequence[Run]) -> list[dict[str, Any]]:
-    """Give the lines whose counts differ between two equal runs.
-
-    Parameters
-    ----------
-    first, second : sequence of Run
-        Runs of the same sizes and draws.
-
-    Returns
-    -------
-    list of dict
-        File, line, size and the two counts of steps.
-    """
-    lines = []
-    for a, b in zip(first, second, strict=True):
-        if a.tally == b.tally:
-            continue
-        left = {(x.file, x.line): x.steps for x in a.tally.lines}
-        right = {(x.file, x.line): x.steps for x in b.tally.lines}
-        for key in sorted({*left, *right}):
-            counts = [left.get(key, 0), right.get(key, 0)]
-            if counts[0] != counts[1]:
-                lines.append({"file": key[0], "line": key[1], "at": dict(a.at), "counts": counts})
-    return lines

@@ -82,9 +82,6 @@ def run(words: Sequence[str]) -> int:
         return _say(_one_line(error), 2)
     except (click.Abort, KeyboardInterrupt):
         return _say("interrupted", 130)
-    except BrokenPipeError:
-        sys.stderr.close()
-        return 0
     return status if isinstance(status, int) else 0
 
 

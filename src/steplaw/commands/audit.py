@@ -4,12 +4,16 @@ from __future__ import annotations
 
 import shlex
 import sys
+from collections.abc import Mapping
 from typing import Any
 
 import click
 
-from steplaw.commands.output import deliver
+from steplaw.commands.output import deliver, must_be_writable
+from steplaw.errors import CallError, SubjectError
+from steplaw.record import Record
 from steplaw.study import make_study
+from steplaw.wording import listing
 
 
 @click.command("audit")
@@ -63,24 +67,38 @@ def command(
     SUBJECT is path/to/file.py:name, package.module:name, or either with Class.method.
     """
     study = make_study(subject, sizes=sizes or None, again=_again(), **given)
-    from steplaw.audit import run
+    must_be_writable(json_path, page_path)
     from steplaw.commands.progress import progress
+    from steplaw.job import run
 
     with progress() as report:
         record = run(study, report)
     deliver(record, json_path, page_path)
-    stopped = record["stopped"]
-    if not record["repeatable"]["holds"]:
-        lines = sorted({f"{x['file']}:{x['line']}" for x in record["repeatable"]["lines"]})
-        click.echo(
-            f"steplaw: the tally of {subject} changes from run to run, at {', '.join(lines)}",
-            err=True,
-        )
+    return _say_what_failed(record, subject)
+
+
+def _say_what_failed(record: Record, subject: str) -> int:
+    """Give one line for each thing that did not end well, and the exit status."""
+    status = 0
+    repeatable, stopped = record["repeatable"], record["stopped"]
+    if repeatable is not None and not repeatable["holds"]:
+        places = sorted({(x["file"], x["line"]) for x in repeatable["lines"]})
+        at = f", at {listing(f'{file}:{line}' for file, line in places)}" if places else ""
+        click.echo(f"steplaw: the tally of {subject} changes from run to run{at}", err=True)
+        status = SubjectError.exit_status
     if stopped is not None:
-        size = ", ".join(f"{name}={value}" for name, value in stopped["at"].items())
-        click.echo(f"steplaw: {subject} {stopped['message']} (at {size})", err=True)
-        return 3
-    return 0
+        click.echo(f"steplaw: {_told(stopped, subject)}", err=True)
+        is_call = stopped["kind"] == "feed"
+        status = CallError.exit_status if is_call else SubjectError.exit_status
+    return status
+
+
+def _told(stopped: Mapping[str, Any], subject: str) -> str:
+    if stopped["kind"] == "feed":
+        return str(stopped["message"])
+    size = ", ".join(f"{name}={value}" for name, value in stopped["at"].items())
+    who = "the audit" if stopped["kind"] == "interrupted" else subject
+    return f"{who} {stopped['message']} (at {size})"
 
 
 def _again() -> str:

@@ -7,7 +7,7 @@ import time
 from collections.abc import Iterator, Mapping
 from contextlib import contextmanager
 
-from steplaw.audit import Report
+from steplaw.job import Report
 
 
 @contextmanager
@@ -17,7 +17,7 @@ def progress() -> Iterator[Report | None]:
     Yields
     ------
     callable or None
-        The reporter that `steplaw.audit.run` takes.
+        The reporter that `steplaw.job.run` takes.
     """
     if not sys.stderr.isatty():
         yield None

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import click
 
-from steplaw.commands.output import show
+from steplaw.commands.output import say, show
 
 
 @click.command("show")
@@ -27,5 +27,5 @@ def command(record_path: str, face: str) -> int:
         return 0
     from steplaw.faces import render
 
-    click.echo(render(record, face))
+    say(f"{render(record, face)}\n")
     return 0

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import click
 
-from steplaw.commands.output import deliver
+from steplaw.commands.output import deliver, must_be_writable
 
 
 @click.command(
@@ -21,6 +21,7 @@ def command(json_path: str | None, module: str | None, words: tuple[str, ...]) -
     """
     if module is None and not words:
         raise click.UsageError("no program is named: type steplaw tally SCRIPT.py, or -m MODULE")
+    must_be_writable(json_path)
     from steplaw.program import run_program
 
     target = module if module is not None else words[0]

@@ -12,6 +12,7 @@ from steplaw.faces.text import clean, percent, sizes
 LINES_MOST = 6
 # All of ASCII punctuation may be escaped by a backslash (CommonMark 0.31, 2.4).
 SPECIAL = re.compile(r"([!-/:-@\[-`{-~])")
+HARMLESS = re.compile(r"(?<!\\)\\([/:,;%=])")
 
 
 def comment(record: Mapping[str, Any]) -> str:
@@ -70,11 +71,9 @@ def escape(text: object) -> str:
     flat = SPECIAL.sub(r"\\\1", clean(text))
     # Mentions, issue numbers and bare addresses are linked even where the character is escaped.
     flat = flat.replace("\\<", "&lt;").replace("\\&", "&amp;").replace("\\@", "&#64;\u2060")
-    return (
-        flat.replace("\\#", "&#35;\u2060")
-        .replace("\\:\\/\\/", ":\u2060//")
-        .replace("www", "w\u2060ww")
-    )
+    flat = flat.replace("\\#", "&#35;\u2060").replace("\\:\\/\\/", ":\u2060//")
+    # These mean nothing inside a line, and formulas are easier to read without a backslash.
+    return HARMLESS.sub(r"\1", flat).replace("www", "w\u2060ww")
 
 
 def code(text: object, cell: bool = False) -> str:

@@ -15,11 +15,13 @@ from contextlib import suppress
 from typing import Any
 
 from steplaw.errors import SteplawError
-from steplaw.feed import Feed, FeedError, FeedSpec, bind
+from steplaw.feed import Feed, FeedSpec, bind
 from steplaw.host.counted import CountedSubject, new_modules
 from steplaw.host.fork import Reply, failure, forked_stream, silence
 from steplaw.host.limits import Limits
+from steplaw.host.pickled import unpickling
 from steplaw.subject import Subject, SubjectRef, call, forget, locate
+from steplaw.wording import describe
 
 
 class Host:
@@ -28,12 +30,19 @@ class Host:
     def __init__(self, job: dict[str, Any]) -> None:
         self.limits = Limits(**job["limits"])
         self.subject: Subject = locate(SubjectRef(**job["subject"]))
-        spec = None if job["feed"] is None else FeedSpec(**job["feed"])
-        self.feed: Feed = bind(spec, self.subject, job["names"])
+        self.feed = self._feed(job)
         self.counted: CountedSubject | None = None
         if job["probes"]:
-            self._import_late(job["first"])
+            self._import_late(job)
             self.counted = CountedSubject(self.subject, self.feed)
+
+    def _feed(self, job: dict[str, Any]) -> Feed:
+        if job["feed"] is None:
+            return bind(None, self.subject, job["names"])
+        spec = FeedSpec(**job["feed"])
+        if spec.kind == "python":
+            return unpickling(self.subject, "", spec.text)
+        return bind(spec, self.subject, job["names"])
 
     def about(self) -> Reply:
         """Describe the subject and its feed for the record."""
@@ -53,22 +62,43 @@ class Host:
 
     def answer(self, request: dict[str, Any]) -> Iterator[Reply]:
         """Run what a request asks for."""
-        do, at = request["do"], request.get("at", {})
-        if do == "time":
+        if request["do"] == "time":
             return forked_stream(lambda: self._time(request), Limits(request["seconds"] * 3 + 30))
         assert self.counted is not None
-        counted = self.counted
-        if do == "every":
-            return forked_stream(lambda: counted.every(at), self.limits)
-        return forked_stream(lambda: counted.draw(at, request["draw"]), self.limits)
+        if request["do"] == "every":
+            return self._every(self.counted, request["at"])
+        counted, at, draw = self.counted, request["at"], request["draw"]
+        feed = self._sent(request) if "input" in request else self.feed
+        return forked_stream(lambda: counted.draw(at, draw, feed), self.limits)
+
+    def _every(self, counted: CountedSubject, at: dict[str, int]) -> Iterator[Reply]:
+        while True:
+            widened = False
+            for reply in forked_stream(lambda: counted.every(at), self.limits):
+                if "widen" in reply:
+                    widened = True
+                    counted.watch.widen(reply["widen"])
+                elif not widened:
+                    yield reply
+            if not widened:
+                return
+
+    def _sent(self, request: dict[str, Any]) -> Feed:
+        return unpickling(self.subject, request["input"], self.feed.text, request["random"])
 
     def _time(self, request: dict[str, Any]) -> Iterator[Reply]:
         from steplaw.clock.timing import measure
 
+        points, sent = request["points"], request.get("inputs")
         subject, feed = self.subject, self.feed
+        feeds = {
+            (tuple(at.values()), draw): unpickling(subject, text, feed.text)
+            for at, texts in zip(points, sent or [[]] * len(points), strict=True)
+            for draw, text in enumerate(texts)
+        }
 
         def make(at: Any, draw: int) -> tuple[tuple[Any, ...], dict[str, Any]]:
-            made = feed.make(at, draw)
+            made = feeds.get((tuple(at.values()), draw), feed).make(at, draw)
             return tuple(made.args), dict(made.kwargs)
 
         def run(args: tuple[Any, ...], kwargs: dict[str, Any]) -> object:
@@ -76,29 +106,21 @@ class Host:
 
         forget(subject)
         timings = measure(
-            run,
-            make,
-            request["points"],
-            budget_seconds=request["seconds"],
-            draws=request["draws"],
+            run, make, points, budget_seconds=request["seconds"], draws=request["draws"]
         )
-        yield {
-            "timings": [
-                {"at": dict(t.at), "best_ns": t.best_ns, "samples": t.samples, "calls": t.calls}
-                for t in timings
-            ]
-        }
+        yield {"timings": [timing.as_json() for timing in timings]}
 
-    def _import_late(self, first: dict[str, int] | None) -> None:
+    def _import_late(self, job: dict[str, Any]) -> None:
         """Import what the subject imports on its first call, so that no run pays for it."""
-        if first is None:
+        if job["first"] is None:
             return
+        first = job["first"]
+        feed = self._sent(first) if "input" in first else self.feed
 
         def plain() -> Iterator[Reply]:
-            with suppress(FeedError):
-                made = self.feed.make(first, 0)
-                with suppress(Exception):
-                    call(self.subject, made.args, made.kwargs)
+            with suppress(Exception):
+                made = feed.make(first["at"], 0)
+                call(self.subject, made.args, made.kwargs)
             yield {}
 
         limits = Limits(min(self.limits.seconds, 10.0), self.limits.megabytes)
@@ -138,8 +160,7 @@ def main() -> None:
         except KeyboardInterrupt:
             return
         except BaseException as error:
-            say(failure("host", f"steplaw's own fault: {type(error).__name__}: {error}"))
-            say({"done": True})
+            say(failure("fault", f"met a fault of steplaw itself: {describe(error)}"))
 
 
 if __name__ == "__main__":

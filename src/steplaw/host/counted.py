@@ -10,12 +10,12 @@ from typing import Any
 from steplaw import subject as subjects
 from steplaw.feed import Feed, FeedError, Input
 from steplaw.host.fork import Reply, failure
+from steplaw.host.watch import Watch, change
 from steplaw.subject import Subject
 from steplaw.tally.assembled import tally_of
 from steplaw.tally.install import Installation
 from steplaw.tally.registry import Registry
-from steplaw.tally.rewrite import Probed
-from steplaw.tally.snapshot import CodeCounts, Reading, Snapshot, counts_between
+from steplaw.tally.snapshot import CodeCounts, Snapshot, counts_between
 from steplaw.wording import describe
 
 Size = Mapping[str, int]
@@ -37,8 +37,9 @@ class CountedSubject:
         self.feed = feed
         self.registry = Registry()
         Installation(self.registry).enter()
+        self.watch = Watch(self.registry)
 
-    def draw(self, at: Size, draw: int) -> Iterator[Reply]:
+    def draw(self, at: Size, draw: int, feed: Feed | None = None) -> Iterator[Reply]:
         """Count one run.
 
         Parameters
@@ -47,6 +48,8 @@ class CountedSubject:
             The size.
         draw : int
             The draw.
+        feed : Feed, optional
+            What makes the input, where it is not the subject's own feed.
 
         Yields
         ------
@@ -54,7 +57,7 @@ class CountedSubject:
             One reply: the tally, its sites, and whether the input was drawn at random.
         """
         try:
-            made = self.feed.make(at, draw)
+            made = (feed or self.feed).make(at, draw)
         except FeedError as error:
             yield failure("feed", str(error))
             return
@@ -62,7 +65,9 @@ class CountedSubject:
         before = Snapshot(self.registry)
         try:
             result = subjects.call(self.subject, made.args, made.kwargs)
-        except Exception as error:
+        except (SystemExit, MemoryError):
+            raise
+        except BaseException as error:
             yield failure("raised", _raised(error, self.subject))
             return
         codes = list(counts_between(before, Snapshot(self.registry)))
@@ -72,6 +77,13 @@ class CountedSubject:
         yield reply
 
     def every(self, at: Size) -> Iterator[Reply]:
+        """Count a run on each input of a size; see `_every`, which a feed that raises leaves."""
+        try:
+            yield from self._every(at)
+        except FeedError as error:
+            yield failure("feed", str(error))
+
+    def _every(self, at: Size) -> Iterator[Reply]:
         """Count a run on each input of a size.
 
         Parameters
@@ -83,27 +95,36 @@ class CountedSubject:
         ------
         dict
             A tally with the number of inputs that gave it and the first of them, for each
-            distinct tally.
+            distinct tally; or only ``widen``, the places of code objects that ran unwatched, where
+            it must all be done again.
         """
         distinct: dict[Any, list[Any]] = {}
-        for number, made in enumerate(self.feed.every(at)):
+        inputs = enumerate(self.feed.every(at))
+        # The feed's own code comes under probes when it first runs, which is before `begin`.
+        one = next(inputs, None)
+        self.watch.begin()
+        while one is not None:
+            number, made = one
             text = _shown(made)
             self._fresh()
-            before = self._readings()
+            before = self.watch.readings()
             try:
                 subjects.call(self.subject, made.args, made.kwargs)
-            except Exception as error:
+            except (SystemExit, MemoryError):
+                raise
+            except BaseException as error:
                 yield failure("raised", f"{_raised(error, self.subject)} on input {text}")
                 return
-            after = self._readings()
-            key = _change(before, after)
-            seen = distinct.get(key)
-            if seen is None:
-                distinct[key] = [1, number, text, before, after]
-            else:
-                seen[0] += 1
+            after = self.watch.readings()
+            seen = distinct.setdefault(change(before, after), [0, number, text, before, after])
+            seen[0] += 1
             if number % 256 == 255:
                 yield {"progress": number + 1}
+            one = next(inputs, None)
+        unwatched = self.watch.unwatched()
+        if unwatched:
+            yield {"widen": unwatched}
+            return
         for times, number, text, before, after in distinct.values():
             codes = [
                 CodeCounts(probed, before.get(probed), reading)
@@ -115,11 +136,13 @@ class CountedSubject:
             yield reply
 
     def _fresh(self) -> None:
+        """Forget kept results, and let the subject's own randomness be its own.
+
+        The feed has seeded the module `random`; a subject that draws from it would otherwise get
+        the same numbers in every run, and look as if its tally were repeatable.
+        """
         subjects.forget(self.subject)
         random.seed()
-
-    def _readings(self) -> dict[Probed, Reading]:
-        return Snapshot(self.registry).readings
 
     def _reply(self, codes: list[CodeCounts]) -> Reply:
         tally = tally_of(codes)
@@ -143,19 +166,6 @@ def _sites(counts: CodeCounts) -> Iterator[list[Any]]:
             yield [code.co_filename, code.co_qualname, code.co_firstlineno, b, line, steps]
 
 
-def _change(before: dict[Probed, Reading], after: dict[Probed, Reading]) -> Any:
-    changed = []
-    for probed, (passes, left) in after.items():
-        old = before.get(probed)
-        if old is None:
-            changed.append((id(probed), tuple(passes), tuple(sorted(left.items()))))
-        elif old[0] != passes or old[1] != left:
-            moved = tuple(b - a for a, b in zip(old[0], passes, strict=True))
-            exits = {k: n - old[1].get(k, 0) for k, n in left.items()}
-            changed.append((id(probed), moved, tuple(sorted(e for e in exits.items() if e[1]))))
-    return tuple(changed)
-
-
 def _shown(made: Input, most: int = 120) -> str:
     parts = [repr(a) for a in made.args] + [f"{k}={v!r}" for k, v in made.kwargs.items()]
     text = ", ".join(parts)
@@ -168,13 +178,26 @@ def _raised(error: BaseException, subject: Subject) -> str:
     while trace is not None:
         file = trace.tb_frame.f_code.co_filename
         if file == subject.file:
-            place = f" at {file}:{trace.tb_lineno}"
+            # What the start of a call raises, such as too deep a recursion, has no line.
+            line = trace.tb_lineno or trace.tb_frame.f_code.co_firstlineno
+            place = f" at {file}:{line}"
         trace = trace.tb_next
     return f"raised {describe(error)}{place}"
 
 
 def new_modules(work: Iterator[Reply]) -> Iterator[Reply]:
-    """Do a run and give the names of the modules that it imported for the first time."""
+    """Do a run and give the names of the modules that it imported for the first time.
+
+    Parameters
+    ----------
+    work : iterator
+        The run.
+
+    Yields
+    ------
+    dict
+        One reply with ``modules``.
+    """
     before = set(sys.modules)
     for _ in work:
         pass

@@ -12,73 +12,71 @@ import select
 import signal
 import time
 from collections.abc import Callable, Iterator
+from contextlib import suppress
 from typing import Any, NoReturn
 
 from steplaw.host.limits import MEGABYTE, Limits
-from steplaw.wording import describe
+from steplaw.wording import describe, one_line
 
 Reply = dict[str, Any]
 
 
-def forked(work: Callable[[], Reply], limits: Limits) -> Reply:
-    """Run a piece of work in a fork of this process.
+def forked_stream(work: Callable[[], Iterator[Reply]], limits: Limits) -> Iterator[Reply]:
+    """Do a piece of work in a fork of this process.
 
     Parameters
     ----------
     work : callable
-        Gives a JSON object.
+        Gives an iterator of JSON objects; one that has ``failed`` in it is its last.
     limits : Limits
-        Time and memory.
+        Time for all of it, and memory.
 
-    Returns
-    -------
+    Yields
+    ------
     dict
-        What `work` gave, or ``{"failed": {"kind", "message"}}``.
+        What `work` gave, each as it comes, and ``{"done": True}`` at the end. Work that does not
+        end well ends with ``{"failed": {"kind", "message"}}`` instead.
     """
-    replies = list(forked_stream(lambda: iter((work(),)), limits))
-    return replies[-1]
-
-
-def forked_stream(work: Callable[[], Iterator[Reply]], limits: Limits) -> Iterator[Reply]:
-    """Run work that gives several replies, each passed on as it comes; see `forked`."""
     reading, writing = os.pipe()
     pid = os.fork()
     if pid == 0:
         os.close(reading)
         _child(work, writing, limits)
     os.close(writing)
-    ended = False
+    last: Reply = {}
+    status = None
     try:
-        for reply in _replies(reading, limits.seconds):
-            ended = "failed" in reply or "done" in reply
-            yield reply
-            if "failed" in reply and reply["failed"]["kind"] == "time":
+        for last in _replies(reading, limits.seconds):
+            yield last
+            if _is_last(last):
                 break
     finally:
         os.close(reading)
-        if not _gone(pid):
-            os.kill(pid, signal.SIGKILL)
-            _, status = os.waitpid(pid, 0)
-        else:
-            status = _STATUS.pop(pid)
-    if not ended:
+        status = _end(pid, patience=0.0 if _is_cut_short(last) else 1.0)
+    if not _is_last(last):
         yield {"failed": _death(status)}
 
 
-_STATUS: dict[int, int] = {}
+def _is_last(reply: Reply) -> bool:
+    return "failed" in reply or "done" in reply
 
 
-def _gone(pid: int, patience: float = 0.5) -> bool:
-    """Whether a child has ended, waiting a moment for one that is about to."""
+def _is_cut_short(reply: Reply) -> bool:
+    return bool(reply.get("failed", {}).get("kind") == "time")
+
+
+def _end(pid: int, patience: float) -> int:
+    """Wait a moment for a child that is about to end, then end it; give its status."""
     end = time.monotonic() + patience
     while True:
         done, status = os.waitpid(pid, os.WNOHANG)
         if done:
-            _STATUS[pid] = status
-            return True
+            return status
         if time.monotonic() > end:
-            return False
-        time.sleep(0.001)
+            with suppress(ProcessLookupError):
+                os.kill(pid, signal.SIGKILL)
+            return os.waitpid(pid, 0)[1]
+        time.sleep(0.0005)
 
 
 def _replies(reading: int, seconds: float) -> Iterator[Reply]:
@@ -101,19 +99,31 @@ def _replies(reading: int, seconds: float) -> Iterator[Reply]:
 
 
 def failure(kind: str, message: str) -> Reply:
-    """Give the reply of a run that failed."""
+    """Give the reply of work that did not end well.
+
+    Parameters
+    ----------
+    kind, message : str
+        As in `steplaw.host.limits.Failure`.
+    """
     return {"failed": {"kind": kind, "message": message}}
 
 
 def _death(status: int) -> dict[str, str]:
     if os.WIFSIGNALED(status):
         number = os.WTERMSIG(status)
-        name = signal.Signals(number).name
         if number == signal.SIGKILL:
             return {"kind": "memory", "message": "was killed (SIGKILL), as for want of memory"}
-        return {"kind": "crash", "message": f"crashed the interpreter ({name})"}
+        return {"kind": "crash", "message": f"crashed the interpreter ({_signal_name(number)})"}
     code = os.WEXITSTATUS(status)
     return {"kind": "exit", "message": f"left the process without a result (status {code})"}
+
+
+def _signal_name(number: int) -> str:
+    try:
+        return signal.Signals(number).name
+    except ValueError:
+        return f"signal {number}"
 
 
 def _child(work: Callable[[], Iterator[Reply]], writing: int, limits: Limits) -> NoReturn:
@@ -123,13 +133,18 @@ def _child(work: Callable[[], Iterator[Reply]], writing: int, limits: Limits) ->
     try:
         for reply in work():
             _send(writing, reply)
-        _send(writing, {"done": True})
+            if "failed" in reply:
+                break
+        else:
+            _send(writing, {"done": True})
     except MemoryError:
+        # The frames of the subject still hold what they took: saying so takes some more.
+        _lift_memory_limit()
         _send(writing, failure("memory", f"needs more than {limits.megabytes} MB of memory"))
     except SystemExit as error:
-        _send(writing, failure("exit", f"called sys.exit({error.code!r})"))
+        _send(writing, failure("exit", f"called sys.exit({one_line(repr(error.code))})"))
     except BaseException as error:
-        _send(writing, failure("raised", describe(error)))
+        _send(writing, failure("fault", f"met a fault of steplaw itself: {describe(error)}"))
     finally:
         os._exit(0)
 
@@ -148,12 +163,18 @@ def silence() -> None:
 
 
 def _limit_memory(megabytes: int) -> None:
-    try:
+    with suppress(ImportError, OSError, ValueError):
         import resource
 
         with open("/proc/self/statm") as file:  # noqa: PTH123 - no pathlib in the child
             held = int(file.read().split()[0]) * resource.getpagesize()
-        limit = held + megabytes * MEGABYTE
-        resource.setrlimit(resource.RLIMIT_AS, (limit, limit))
-    except (ImportError, OSError, ValueError):
-        return
+        most = resource.getrlimit(resource.RLIMIT_AS)[1]
+        resource.setrlimit(resource.RLIMIT_AS, (held + megabytes * MEGABYTE, most))
+
+
+def _lift_memory_limit() -> None:
+    with suppress(ImportError, OSError, ValueError):
+        import resource
+
+        most = resource.getrlimit(resource.RLIMIT_AS)[1]
+        resource.setrlimit(resource.RLIMIT_AS, (most, most))

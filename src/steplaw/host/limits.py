@@ -32,7 +32,8 @@ class Failure:
     Parameters
     ----------
     kind : str
-        'raised', 'exit', 'time', 'memory', 'crash' or 'feed'.
+        'raised', 'exit', 'time', 'memory' or 'crash' of the subject; 'feed' for a feed that
+        raised, 'interrupted' for a person's interrupt, 'fault' for a defect of steplaw.
     message : str
         One line for the person.
     at : mapping of str to int

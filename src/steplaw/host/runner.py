@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 import os
+import select
 import signal
 import subprocess
 import sys
@@ -11,11 +12,12 @@ from collections.abc import Callable, Iterator, Mapping, Sequence
 from contextlib import suppress
 from dataclasses import asdict, dataclass
 from types import TracebackType
-from typing import Any, Self
+from typing import Any, Self, TextIO, TypeGuard
 
 from steplaw.errors import CallError, SteplawError, SubjectError
-from steplaw.feed import FeedSpec
+from steplaw.feed import FeedError, FeedSpec
 from steplaw.host.limits import Failure, Limits
+from steplaw.host.pickled import PickledFeed
 from steplaw.subject import SubjectRef
 from steplaw.tally.model import Tally
 
@@ -92,8 +94,16 @@ class Runner:
     Raises
     ------
     CallError
-        If the subject or its feed cannot be used.
+        If this system has no forks, or a feed given in Python cannot be used.
+
+    Notes
+    -----
+    The host is started and left to load the subject: the first use of `about`, or the first run,
+    waits for it and raises what went wrong. So several of them load at the same time.
     """
+
+    #: Longest time to load a subject, in seconds, where the limit on a run is not above it.
+    LOAD_SECONDS = 60.0
 
     def __init__(
         self,
@@ -110,27 +120,68 @@ class Runner:
                 "runs are made in forked processes, which this system does not have",
                 "use Linux, macOS or the Windows Subsystem for Linux",
             )
+        self._limits = limits or Limits()
+        self._names = tuple(names)
+        self._sender = PickledFeed(feed, self._names) if _is_local(feed) else None
+        self._subject = str(ref)
+        self._about: dict[str, Any] | None = None
         job = {
             "subject": asdict(ref),
             "feed": None if feed is None else {"kind": feed.kind, "text": feed.text},
             "names": list(names),
-            "limits": asdict(limits or Limits()),
+            "limits": asdict(self._limits),
             "probes": probes,
-            "first": None if first is None else dict(first),
+            "first": self._first(first),
         }
+        self._process, self._replies = self._start()
+        self._ask(job)
+
+    def _start(self) -> tuple[subprocess.Popen[bytes], TextIO]:
         reading, writing = os.pipe()
-        command = [sys.executable, "-m", "steplaw.host", str(writing)]
-        self._process = subprocess.Popen(
-            command,
+        process = subprocess.Popen(
+            [sys.executable, "-m", "steplaw.host", str(writing)],
             stdin=subprocess.PIPE,
             pass_fds=(writing,),
             env={**os.environ, "PYTHONHASHSEED": "0", "PYTHONPATH": _import_path()},
             start_new_session=True,
         )
         os.close(writing)
-        self._replies = os.fdopen(reading, encoding="utf-8")
-        self._ask(job)
-        self.about: dict[str, Any] = self._reply()
+        return process, os.fdopen(reading, encoding="utf-8")
+
+    def _first(self, at: Size | None) -> dict[str, Any] | None:
+        if at is None:
+            return None
+        try:
+            return {"at": dict(at), **self._sent(at, 0)}
+        except FeedError:
+            return None
+
+    def _sent(self, at: Size, draw: int) -> dict[str, Any]:
+        """Give the part of a request that holds an input made here."""
+        if self._sender is None:
+            return {}
+        text, random = self._sender.make(at, draw)
+        return {"input": text, "random": random}
+
+    @property
+    def about(self) -> dict[str, Any]:
+        """The subject and its feed, as the host describes them.
+
+        Raises
+        ------
+        CallError
+            If the subject or its feed cannot be used.
+        """
+        return self.load()
+
+    def load(self) -> dict[str, Any]:
+        """Wait until the subject is loaded; give what `about` gives."""
+        if self._about is None:
+            seconds = max(self.LOAD_SECONDS, self._limits.seconds)
+            if not select.select([self._replies], [], [], seconds)[0]:
+                raise SubjectError(f"{self._subject} takes more than {seconds:g} s to import")
+            self._about = self._reply()
+        return self._about
 
     def __enter__(self) -> Self:
         return self
@@ -168,8 +219,12 @@ class Runner:
         RunFailed
             If the subject failed or ran past a limit.
         """
+        try:
+            sent = self._sent(at, draw)
+        except FeedError as error:
+            raise RunFailed(Failure("feed", str(error), dict(at), draw)) from None
         run = None
-        for reply in self._answers({"do": "count", "at": dict(at), "draw": draw}, at, draw):
+        for reply in self._answers({"do": "count", "at": dict(at), "draw": draw, **sent}, at, draw):
             run = _run(at, draw, reply)
         if run is None:
             raise RunFailed(Failure("crash", "ended without a tally", at, draw))
@@ -216,18 +271,21 @@ class Runner:
         list of dict
             ``at``, ``best_ns`` and ``samples`` by size.
         """
-        request = {
+        request: dict[str, Any] = {
             "do": "time",
             "points": [dict(p) for p in points],
             "draws": draws,
             "seconds": seconds,
         }
+        if self._sender is not None:
+            request["inputs"] = [[self._sender.make(p, d)[0] for d in range(draws)] for p in points]
         timings: list[dict[str, Any]] = []
         for reply in self._answers(request, points[-1], 0):
             timings = reply["timings"]
         return timings
 
     def _answers(self, request: Mapping[str, Any], at: Size, draw: int) -> Iterator[dict[str, Any]]:
+        self.load()
         self._ask(request)
         while True:
             reply = self._reply()
@@ -244,19 +302,38 @@ class Runner:
             self._process.stdin.write(json.dumps(request).encode() + b"\n")
             self._process.stdin.flush()
         except BrokenPipeError:
-            raise SubjectError("the process that runs the subject has ended") from None
+            status = self._process.wait()
+            raise SubjectError(
+                f"the process that runs {self._subject} has ended ({_ended(status)})"
+            ) from None
 
     def _reply(self) -> dict[str, Any]:
         line = self._replies.readline()
         if not line:
-            self._process.wait()
-            raise SubjectError("the process that runs the subject has ended without an answer")
+            status = self._process.wait()
+            raise SubjectError(
+                f"the process that runs {self._subject} has ended without an answer "
+                f"({_ended(status)})"
+            )
         reply: dict[str, Any] = json.loads(line)
         if "error" in reply:
             error = reply["error"]
             kinds: dict[str, type[SteplawError]] = {"SubjectError": SubjectError}
             raise kinds.get(error["kind"], CallError)(error["message"], error["hint"])
         return reply
+
+
+def _is_local(feed: FeedSpec | None) -> TypeGuard[FeedSpec]:
+    return feed is not None and feed.kind == "python"
+
+
+def _ended(status: int) -> str:
+    if status >= 0:
+        return f"status {status}"
+    try:
+        return signal.Signals(-status).name
+    except ValueError:
+        return f"signal {-status}"
 
 
 def _run(at: Size, draw: int, reply: Mapping[str, Any]) -> Run:

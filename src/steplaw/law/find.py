@@ -9,6 +9,7 @@ from fractions import Fraction
 from steplaw.law.choose import Found, search
 from steplaw.law.families import forms_for
 from steplaw.law.fitted import fit
+from steplaw.law.growth import Vector
 from steplaw.law.leading import leading_term
 from steplaw.law.model import Law, Observation
 from steplaw.law.proof import prove
@@ -25,6 +26,7 @@ def find_law(
     *,
     exhaustive: bool = False,
     shape: Shape | None = None,
+    orders: Sequence[Vector] = (),
 ) -> Law:
     """Find the law that a figure follows.
 
@@ -38,6 +40,10 @@ def find_law(
         Search wider mixtures of exact families; slower, for the figure that a study is about.
     shape : Shape, optional
         The form that the structure of the code proves. Without it nothing is graded ``proved``.
+
+    orders : sequence of Vector
+        Orders of growth (see `order`) that exact counts of the same subject have; they settle ties
+        between orders that fit drawn values equally well.
 
     Returns
     -------
@@ -57,7 +63,7 @@ def find_law(
         from steplaw.law.several import find_several
 
         return find_several(merged, tuple(names), shape)
-    return _find_single(merged, names[0], exhaustive, shape)
+    return _find_single(merged, names[0], exhaustive, shape, orders)
 
 
 def merge(observations: Sequence[Observation]) -> list[Observation]:
@@ -88,12 +94,16 @@ def is_exact(o: Observation) -> bool:
 
 
 def _find_single(
-    merged: Sequence[Observation], name: str, exhaustive: bool, shape: Shape | None
+    merged: Sequence[Observation],
+    name: str,
+    exhaustive: bool,
+    shape: Shape | None,
+    orders: Sequence[Vector],
 ) -> Law:
     sizes = tuple(o.at[0] for o in merged)
     values = [Fraction(o.value) for o in merged]
     if not all(is_exact(o) for o in merged):
-        return fit(merged, name)
+        return fit(merged, name, orders)
     contradiction = ""
     if shape is not None:
         proved, contradiction = prove(sizes, values, name, shape)

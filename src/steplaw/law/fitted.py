@@ -9,6 +9,7 @@ from functools import lru_cache
 from typing import TYPE_CHECKING, Any
 
 from steplaw.law.fitbases import Basis, FitTerm, bases
+from steplaw.law.growth import Vector, compare
 from steplaw.law.leading import leading_term
 from steplaw.law.leastsquares import least_squares, student
 from steplaw.law.model import Law, Observation
@@ -86,7 +87,7 @@ class Trial:
     score: float
 
 
-def fit(observations: Sequence[Observation], name: str) -> Law:
+def fit(observations: Sequence[Observation], name: str, orders: Sequence[Vector] = ()) -> Law:
     """Fit a law of one size.
 
     Parameters
@@ -95,6 +96,8 @@ def fit(observations: Sequence[Observation], name: str) -> Law:
         In increasing order of size.
     name : str
         The size name.
+    orders : sequence of Vector
+        Orders of growth known to occur; one of them settles a tie between orders that fit alike.
 
     Returns
     -------
@@ -123,9 +126,15 @@ def fit(observations: Sequence[Observation], name: str) -> Law:
         off = 100 * max(best, chosen.held_error)
         return _open(data, name, f"nothing fits: the best formula is {off:.0f} % off")
     nearby = [t for t in trials if t.score <= RIVAL * best + SAME]
-    rivals = _rivals(chosen, nearby)
-    if rivals:
-        texts = [leading_text(t, name) for t in (chosen, *rivals)]
+    tied = [chosen, *_rivals(chosen, nearby)]
+    if len(tied) > 1:
+        texts = [leading_text(t, name) for t in tied]
+        known = [t for t in tied if any(compare(t.basis[0].growth, o) == 0 for o in orders)]
+        if len(known) == 1:
+            law = _law(data, known[0], nearby, name)
+            others = ", ".join(x for t, x in zip(tied, texts, strict=True) if t is not known[0])
+            why = f"{others} would fit as well; taken is the growth that exact counts here have"
+            return replace(law, note=f"{law.note}; {why}" if law.note else why)
         return _open(
             data, name,
             "several orders of growth fit equally well: " + ", ".join(texts)

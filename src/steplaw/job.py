@@ -3,20 +3,23 @@
 from __future__ import annotations
 
 import platform
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
+from contextlib import ExitStack, contextmanager
 from dataclasses import dataclass
 from typing import Any
 
-from steplaw import series
-from steplaw.clock import Timing, check
+from steplaw.errors import CallError
+from steplaw.feed import size_text
 from steplaw.findings import Findings
-from steplaw.host.runner import Run, RunFailed, Runner
-from steplaw.law.model import Observation
+from steplaw.host.limits import Failure
+from steplaw.host.runner import Runner
 from steplaw.record import AuditRecord
+from steplaw.repeat import Repeat, run_again
 from steplaw.study import Study, make_study
-from steplaw.sweep import Sweep, sweep, unequal
+from steplaw.sweep import Sweep, interrupted, sweep
+from steplaw.timed import hold_against_clock, points_to_time, undecided
+from steplaw.wording import listing
 
-CLOCK_SECONDS = 6.0
 CAUTIONS = (
     "Auditing runs the subject's code.",
     "A law holds for the inputs it was found on.",
@@ -76,13 +79,15 @@ def audit(
     ------
     CallError
         If subject, feed or sizes cannot be used.
+    KeyboardInterrupt
+        If the audit is interrupted.
 
     Notes
     -----
-    Runs are made in a child process, which imports the subject again. A failure of the subject is
+    Runs are made in child processes, which import the subject again. A failure of the subject is
     kept in the record's ``stopped``.
     """
-    return run(
+    record = run(
         make_study(
             subject,
             feed=feed,
@@ -96,6 +101,9 @@ def audit(
             limit_memory=limit_memory,
         )
     )
+    if record["stopped"] is not None and record["stopped"]["kind"] == "interrupted":
+        raise KeyboardInterrupt
+    return record
 
 
 def run(study: Study, report: Report | None = None) -> AuditRecord:
@@ -111,16 +119,41 @@ def run(study: Study, report: Report | None = None) -> AuditRecord:
     Returns
     -------
     AuditRecord
-        The finished record.
+        The finished record. An interrupt ends the runs; what was finished is in it.
+
+    Raises
+    ------
+    CallError
+        If subject or feed cannot be used.
     """
-    first = study.plan.points[min(2, len(study.plan.points) - 1)]
-    with Runner(study.subject, study.feed, study.plan.names, study.limits, first=first) as runner:
-        about = runner.about
-        swept = _sweep(study, runner, report)
-    repeat = _repeat(study, swept, first)
-    findings = Findings(swept, study.figure, about["loaded"], repeat.changed)
-    timed = _clock(study, swept, report) if study.clock else None
+    with _hosts(study) as hosts:
+        about = hosts.counting.about
+        swept = _sweep(study, hosts.counting, report)
+        repeat = _run_again(hosts.again, swept)
+        findings = Findings(swept, study.figure, about["loaded"], repeat)
+        timed = _hold_against_clock(study, hosts.timing, swept, report)
     return AuditRecord(_record(study, about, swept, findings, repeat, timed))
+
+
+@dataclass(frozen=True, slots=True)
+class _Hosts:
+    """The processes of an audit; the others load the subject while the first runs it."""
+
+    counting: Runner
+    again: Runner
+    timing: Runner | None
+
+
+@contextmanager
+def _hosts(study: Study) -> Iterator[_Hosts]:
+    first = study.plan.points[min(2, len(study.plan.points) - 1)]
+    asked = (study.subject, study.feed, study.plan.names, study.limits)
+    with ExitStack() as stack:
+        counting = stack.enter_context(Runner(*asked, first=first))
+        counting.load()
+        again = stack.enter_context(Runner(*asked, first=first))
+        timing = stack.enter_context(Runner(*asked, probes=False)) if study.clock else None
+        yield _Hosts(counting, again, timing)
 
 
 def _sweep(study: Study, runner: Runner, report: Report | None) -> Sweep:
@@ -128,90 +161,51 @@ def _sweep(study: Study, runner: Runner, report: Report | None) -> Sweep:
         if report is not None:
             report("counting", at, done, rest)
 
-    return sweep(
-        runner,
-        study.plan,
-        draws=study.draws,
-        every=study.every,
-        asked=study.asked,
-        report=tell,
+    swept = sweep(
+        runner, study.plan, draws=study.draws, every=study.every, asked=study.asked, report=tell
     )
+    if not swept.runs and swept.stopped is not None:
+        _refuse_if_not_the_subjects(swept.stopped)
+    return swept
 
 
-@dataclass(frozen=True, slots=True)
-class Repeat:
-    """Whether equal runs in a second process gave equal tallies.
-
-    Parameters
-    ----------
-    checked_at : list of dict
-        Sizes that were run again.
-    lines : list of dict
-        Lines whose counts differ.
-    """
-
-    checked_at: list[dict[str, int]]
-    lines: list[dict[str, Any]]
-
-    @property
-    def changed(self) -> set[tuple[str, int]]:
-        """File and line of what changed."""
-        return {(x["file"], x["line"]) for x in self.lines}
+def _refuse_if_not_the_subjects(stopped: Failure) -> None:
+    """Raise where nothing at all was run and the subject is not the cause."""
+    if stopped.kind == "feed":
+        raise CallError(stopped.message)
+    if stopped.kind == "interrupted":
+        raise KeyboardInterrupt
 
 
-def _repeat(study: Study, swept: Sweep, first: Mapping[str, int]) -> Repeat:
-    points = list(swept.runs)
-    chosen = sorted({0, len(points) // 2, len(points) - 1} & set(range(len(points))))
-    if study.every:
-        chosen = chosen[:2]
-    if not chosen:
-        return Repeat([], [])
-    old: list[Run] = []
-    new: list[Run] = []
-    with Runner(study.subject, study.feed, study.plan.names, study.limits, first=first) as runner:
-        for place in chosen:
-            at = swept.at(points[place])
-            kept = swept.runs[points[place]]
-            try:
-                again = runner.every(at) if study.every else [runner.count(at, 0)]
-            except RunFailed:
-                again = []
-            if study.every:
-                old += kept if len(kept) == len(again) else []
-                new += again if len(kept) == len(again) else []
-            elif again:
-                old.append(kept[0])
-                new += again
-    return Repeat([swept.at(points[p]) for p in chosen], unequal(old, new))
-
-
-def _clock(study: Study, swept: Sweep, report: Report | None) -> dict[str, Any] | None:
-    steps = series.of(swept, lambda r: r.tally.steps)
-    chosen = _spread([o for o in steps if all(o.at) and o.value > 0])
-    if not chosen or study.every:
+def _run_again(runner: Runner, swept: Sweep) -> Repeat | None:
+    if _is_interrupted(swept):
         return None
-    points = [swept.at(o.at) for o in chosen]
-    if report is not None:
-        report("timing", points[-1], 0, None)
-    draws = study.draws if swept.varies else 1
     try:
-        with Runner(
-            study.subject, study.feed, study.plan.names, study.limits, probes=False
-        ) as runner:
-            rows = runner.time(points, draws, CLOCK_SECONDS)
-    except RunFailed as failed:
-        return {"agrees": None, "reason": f"the timed run failed: {failed.failure.message}"}
-    timings = [Timing(r["at"], r["best_ns"], tuple(r["samples"]), r["calls"]) for r in rows]
-    return check(points, [o.value for o in chosen], timings)
+        return run_again(runner, swept)
+    except KeyboardInterrupt:
+        swept.stopped = interrupted(swept.at(max(swept.runs)))
+        return None
 
 
-def _spread(steps: Sequence[Observation]) -> list[Observation]:
-    """Choose sizes whose steps grow by a quarter or more from one to the next."""
-    chosen: list[Observation] = []
-    for o in sorted(steps, key=lambda o: (o.value, o.at), reverse=True):
-        if not chosen or o.value * 5 <= chosen[-1].value * 4:
-            chosen.append(o)
-    return chosen[::-1][-16:]
+def _hold_against_clock(
+    study: Study, runner: Runner | None, swept: Sweep, report: Report | None
+) -> dict[str, Any] | None:
+    chosen = points_to_time(swept)
+    if runner is None or not chosen:
+        return None
+    if _is_interrupted(swept):
+        return undecided("the audit was interrupted before the clock check")
+    if report is not None:
+        report("timing", swept.at(chosen[-1].at), 0, None)
+    try:
+        return hold_against_clock(runner, swept, chosen, study.draws)
+    except KeyboardInterrupt:
+        swept.stopped = interrupted(swept.at(chosen[-1].at))
+        return undecided("the clock check was interrupted")
+
+
+def _is_interrupted(swept: Sweep) -> bool:
+    return swept.stopped is not None and swept.stopped.kind == "interrupted"
 
 
 def _record(
@@ -219,7 +213,7 @@ def _record(
     about: Mapping[str, Any],
     swept: Sweep,
     findings: Findings,
-    repeat: Repeat,
+    repeat: Repeat | None,
     timed: dict[str, Any] | None,
 ) -> dict[str, Any]:
     from steplaw import __version__
@@ -244,14 +238,10 @@ def _record(
         "lines": findings.lines(),
         "functions": findings.functions(),
         "clock": timed,
-        "repeatable": {
-            "holds": not repeat.lines,
-            "checked_at": repeat.checked_at,
-            "lines": repeat.lines,
-        },
+        "repeatable": None if repeat is None else repeat.as_json(),
         "stopped": None if swept.stopped is None else swept.stopped.as_json(),
-        "notes": [*_notes(loaded, swept), *CAUTIONS],
-        "run_again": study.again or f"steplaw audit {study.subject}",
+        "notes": [*_notes(loaded, swept, repeat), *CAUTIONS],
+        "run_again": study.again,
     }
 
 
@@ -259,12 +249,21 @@ def _points(swept: Sweep, sizes: Sequence[Any]) -> list[dict[str, int]]:
     return [swept.at(tuple(s) if isinstance(s, list | tuple) else (s,)) for s in sizes]
 
 
-def _notes(loaded: Mapping[str, Any], swept: Sweep) -> list[str]:
-    notes = list(loaded["notes"])
+def _notes(loaded: Mapping[str, Any], swept: Sweep, repeat: Repeat | None) -> Iterator[str]:
+    yield from loaded["notes"]
+    by_message: dict[str, list[str]] = {}
     for failure in swept.passed_over:
-        size = ", ".join(f"{k}={v}" for k, v in failure.at.items())
-        notes.append(f"Left out {size}: there the subject {failure.message}.")
+        by_message.setdefault(_told(failure), []).append(size_text(failure.at))
+    for message, sizes in by_message.items():
+        yield f"Left out {listing(sizes)}: there {message}."
     unread = next((r.unread for runs in swept.runs.values() for r in runs if r.unread), None)
     if unread is not None:
-        notes.append(f"The subject {unread}.")
-    return notes
+        yield f"The subject {unread}."
+    for failure in repeat.failures if repeat is not None else ():
+        yield f"Run again at {size_text(failure.at)}, {_told(failure)}; it had not before."
+    if repeat is None and swept.runs:
+        yield "Nothing was run again in a second process, to see that equal runs count equally."
+
+
+def _told(failure: Failure) -> str:
+    return failure.message if failure.kind == "feed" else f"the subject {failure.message}"
