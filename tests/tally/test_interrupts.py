@@ -12,7 +12,6 @@ import _thread
 import dis
 import functools
 import signal
-import sys
 import threading
 from collections.abc import Callable, Iterator
 from types import FrameType
@@ -118,21 +117,10 @@ def rounds_seen() -> Iterator[list[int]]:
     signal.signal(signal.SIGINT, before)
 
 
-#: A signal that is handled at a jump back is looked up in the exception table at the instruction
-#: before the loop; these loops lose or gain a round by it.
-NOT_EXACT_YET = {
-    (3, 11): {"range_loop"},
-    (3, 12): {"range_loop", "nested_range_loops", "loop_over_a_list"},
-    (3, 13): {"range_loop", "nested_range_loops", "loop_over_a_list", "with_a_handler_inside"},
-}[sys.version_info[:2]]
-
-
 @pytest.mark.parametrize("subject", SUBJECTS)
 def test_interrupted_between_instructions(
-    subject: Callable[[int], None], rounds_seen: list[int], request: pytest.FixtureRequest
+    subject: Callable[[int], None], rounds_seen: list[int]
 ) -> None:
-    if subject.__name__ in NOT_EXACT_YET:
-        request.applymarker(pytest.mark.xfail(reason="signals at a jump back", strict=True))
     with counting() as counter:
         try:
             subject(8)

@@ -117,10 +117,13 @@ class Sheet:
 
         table = self.table()
         table.show_header = True
-        for heading, side in columns:
+        for place, (heading, side) in enumerate(columns):
+            # What stands first gives way where the sheet is too narrow for all of it.
+            least = max(len(heading), *(len(self.clean(row[place])) for row in rows), 1)
             table.add_column(
                 heading,
                 justify="right" if side == "right" else "left",
+                min_width=min(least, 18) if place else None,
                 no_wrap=True,
                 overflow="ellipsis" if self.unicode else "crop",
             )

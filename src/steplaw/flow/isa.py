@@ -50,6 +50,10 @@ MAY_RERAISE = _ops("END_ASYNC_FOR", "CLEANUP_THROW")
 #: the inner iterator of a `yield from` moves the frame on to the jump behind it first.)
 SUSPENDED = _ops("YIELD_VALUE", "JUMP_BACKWARD_NO_INTERRUPT")
 BRANCH = JUMPS - GOTO
+#: Jumps at which pending signals are handled and threads are switched.
+CHECKED_JUMPS = BACKWARD - _ops("JUMP_BACKWARD_NO_INTERRUPT")
+#: Before 3.13 that is done after the jump: an exception is looked up right before its target.
+CHECKS_BEHIND_JUMP = VERSION < (3, 13)
 ENDS_BLOCK = GOTO | RETURN | SUSPEND | ALWAYS_RAISE | MAY_RERAISE | BRANCH
 
 #: Instructions that an exhausted FOR_ITER passes over at its target.

@@ -6,9 +6,23 @@ from dataclasses import dataclass
 
 from steplaw.flow import isa
 from steplaw.flow.blocks import OUTSIDE, Blocks
-from steplaw.flow.effects import begins, depths
+from steplaw.flow.effects import begins, depths, takes_and_gives
 
 _LOAD_GLOBAL, _CALL, _GET_ITER = (isa.OPMAP[n] for n in ("LOAD_GLOBAL", "CALL", "GET_ITER"))
+
+
+#: What instructions of handlers take from the stack and give to it.
+_IN_HANDLERS = {
+    isa.OPMAP[name]: effect
+    for name, effect in (
+        ("PUSH_EXC_INFO", (1, 2)),
+        ("CHECK_EXC_MATCH", (1, 1)),
+        ("COPY", (0, 1)),
+        ("POP_EXCEPT", (1, 0)),
+        ("POP_TOP", (1, 0)),
+        ("STORE_FAST", (1, 0)),
+    )
+} | {op: (1, 0) for op in isa.BRANCH if "POP_JUMP" in isa.OPNAME[op]}
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,8 +82,8 @@ def range_loops(graph: Blocks) -> list[RangeLoop]:
     depth = depths(graph)
     loops = []
     for head, call in heads:
-        body = _body(graph, head)
         level = depth[head]
+        body = None if level is None else _body(graph, head, depth, level)
         if body is None or level is None or not _closed(graph, head, body):
             continue
         edge = next(n for n, e in enumerate(graph.edges) if e.source == head and e.kind == "fall")
@@ -97,7 +111,7 @@ def _range_call(graph: Blocks, head: int) -> int | None:
     return None
 
 
-def _body(graph: Blocks, head: int) -> frozenset[int] | None:
+def _body(graph: Blocks, head: int, depth: list[int | None], level: int) -> frozenset[int] | None:
     """Give the blocks that lead back to a loop's head without passing it, None for no such loop."""
     before: list[set[int]] = [set() for _ in graph.blocks]
     for edge in graph.edges:
@@ -121,11 +135,17 @@ def _body(graph: Blocks, head: int) -> frozenset[int] | None:
                 return None
             body.add(b)
             todo.extend(before[b])
-    _add_raising(graph, head, body, before)
+    keeping = {b for b, d in enumerate(depth) if d is not None and _keeps(graph, b, d, level)}
+    for handler in graph.decoded.handlers:
+        if handler is not None and handler.depth < level:
+            keeping.discard(graph.of[handler.target])
+    _add_raising(graph, head, body, before, keeping)
     return frozenset(body)
 
 
-def _add_raising(graph: Blocks, head: int, body: set[int], before: list[set[int]]) -> None:
+def _add_raising(
+    graph: Blocks, head: int, body: set[int], before: list[set[int]], keeping: set[int]
+) -> None:
     """Add the blocks that can only be reached from the loop and can only raise in the end."""
     after: list[set[int]] = [set() for _ in graph.blocks]
     ends: set[int] = set()
@@ -138,7 +158,7 @@ def _add_raising(graph: Blocks, head: int, body: set[int], before: list[set[int]
     while True:
         more = {
             b
-            for b in range(len(graph.blocks))
+            for b in keeping
             if b not in body
             and b not in done
             and before[b]
@@ -149,6 +169,20 @@ def _add_raising(graph: Blocks, head: int, body: set[int], before: list[set[int]
         if not more:
             break
         body |= more
+
+
+def _keeps(graph: Blocks, b: int, depth: int, level: int) -> bool:
+    """Whether a block leaves the lowest `level` items of the stack where they are."""
+    d, block = graph.decoded, graph.blocks[b]
+    for k in range(block.first, block.last + 1):
+        op = d.ops[k]
+        effect = _IN_HANDLERS.get(op) or takes_and_gives(op, d.args[k])
+        if op in isa.ALWAYS_RAISE:
+            effect = 1, 0
+        if effect is None or depth - effect[0] < level:
+            return False
+        depth += effect[1] - effect[0]
+    return True
 
 
 def _closed(graph: Blocks, head: int, body: frozenset[int]) -> bool:

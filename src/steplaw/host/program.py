@@ -127,7 +127,8 @@ def _write(path: str, before: Snapshot, after: Snapshot) -> None:
     from steplaw.tally.snapshot import counts_between
 
     notes = [*before.unsettled, *after.unsettled]
-    tally = tally_of(list(counts_between(before, after)), notes)
+    codes = list(counts_between(before, after, notes))
+    tally = tally_of(codes, notes)
     with open(path, "w", encoding="utf-8") as file:  # noqa: PTH123
         json.dump(tally.as_json(), file)
 

@@ -14,17 +14,17 @@ from operator import length_hint
 from types import CodeType
 
 from steplaw.flow import isa
-from steplaw.flow.blocks import Blocks
+from steplaw.flow.blocks import Blocks, Edge
 from steplaw.flow.decode import Decoded
 from steplaw.flow.ranges import RangeLoop, range_loops
 from steplaw.flow.weights import edge_weights
 from steplaw.tally.placement import Placement
 from steplaw.tally.trips import Trips
-from steplaw.tally.writer import Writer
+from steplaw.tally.writer import Writer, returns_constant
 
 FULL = sys.maxsize
 _EXTRA_STACK = 10
-#: Cost of a probe that a call leaves on the stack, and of a loop's trip count at its entry,
+#: Cost of a probe that is left on the stack, and of a loop's trip count at its entry,
 #: beside a probe that clears up behind itself.
 _CALL_COST, _TRIPS_COST = 0.5, 2.5
 
@@ -100,12 +100,19 @@ class Probed:
         return sum(n for place, n in enumerate(passes) if place not in self.trips)
 
 
+def _stays(graph: Blocks, edge: Edge, start: int) -> bool:
+    """Whether a probe on an edge may leave what it loads on the stack until the return."""
+    if edge.kind == "enter":
+        return edge.target == start
+    return edge.kind == "leave" and returns_constant(graph, edge.source) is not None
+
+
 def _costs(graph: Blocks, loops: dict[int, RangeLoop]) -> list[float]:
     """Give the likely cost of counting every edge: how often, by how dear each time."""
     weights = edge_weights(graph)
     start = graph.of[graph.decoded.ops.index(isa.RESUME)]
     costs = [
-        weight * (_CALL_COST if edge.kind == "enter" and edge.target == start else 1.0)
+        weight * (_CALL_COST if _stays(graph, edge, start) else 1.0)
         for edge, weight in zip(graph.edges, weights, strict=True)
     ]
     for number, loop in loops.items():

@@ -27,6 +27,17 @@ _OP = isa.OPMAP
 _DROP = (isa.END_FOR,) if isa.VERSION == (3, 12) else (_OP["POP_TOP"], _OP["POP_TOP"])
 
 
+def returns_constant(graph: Blocks, b: int) -> int | None:
+    """Give where a block begins to return a constant, None if it does not end so."""
+    ops, block = graph.decoded.ops, graph.blocks[b]
+    if ops[block.last] == _OP.get("RETURN_CONST"):
+        return block.last
+    begins = block.last - 1
+    if begins < block.first + block.setup or ops[block.last] != _OP["RETURN_VALUE"]:
+        return None
+    return begins if ops[begins] == _OP["LOAD_CONST"] else None
+
+
 class Writer:
     """Writes one code object.
 
@@ -87,6 +98,11 @@ class Writer:
         self._calls = {writer.loop.call: writer for writer in self._loops}
         self._iterators = {writer.loop.iterator: writer for writer in self._loops}
         self._inside = self._loops_by_block()
+        self._jumped_back_to = {
+            graph.of[target]
+            for op, target in zip(self.decoded.ops, self.decoded.targets, strict=True)
+            if op in isa.CHECKED_JUMPS and isa.CHECKS_BEHIND_JUMP
+        }
 
     def const(self, value: object) -> int:
         """Add a constant and give its number."""
@@ -125,6 +141,7 @@ class Writer:
         self._tail: list[list[int]] = [[] for _ in range(n)]
         self._after: list[list[int]] = [[] for _ in range(n)]
         self._land: dict[int, int] = {}
+        self._returns: dict[int | None, int] = {}
         self._stub_of: dict[int, int] = {}
         for number in self._probe_const:
             edge = self.graph.edges[number]
@@ -132,6 +149,8 @@ class Writer:
                 self._at_start = number
             elif edge.kind == "enter":
                 self._head[edge.target].append(number)
+            elif edge.kind == "leave" and returns_constant(self.graph, edge.source) is not None:
+                self._returns[returns_constant(self.graph, edge.source)] = number
             elif edge.kind in ("leave", "raise", "goto"):
                 self._tail[edge.source].append(number)
             elif edge.kind == "fall":
@@ -149,9 +168,12 @@ class Writer:
 
     def _cover(self, k: int) -> Cover | None:
         """Give where an exception of an original instruction goes."""
-        handler = self.decoded.handlers[k]
         op = self.decoded.ops[k]
-        quiet = op in isa.ALWAYS_RAISE or op in isa.MAY_RERAISE
+        return self._cover_in(k, self.graph.of[k], op in isa.ALWAYS_RAISE or op in isa.MAY_RERAISE)
+
+    def _cover_in(self, k: int, b: int, quiet: bool) -> Cover | None:
+        """Give where the handler of instruction `k` is reached from block `b`."""
+        handler = self.decoded.handlers[k]
         target: Cover | None
         if handler is not None:
             block = self.graph.of[handler.target]
@@ -161,7 +183,7 @@ class Writer:
             block, target = -1, None
         else:
             block, target = -1, (self._outer_label, self.base, True)
-        for writer in reversed(self._inside.get(self.graph.of[k], ())):
+        for writer in reversed(self._inside.get(b, ())):
             if block not in writer.loop.body:
                 target = writer.leaving(target)
         return target
@@ -183,6 +205,8 @@ class Writer:
                 self.out.mark(self._landings[b])
                 if b in self._land:
                     self._probe(self._land[b], None)
+            if b in self._jumped_back_to:
+                self.out.emit(_OP["NOP"], cover=self._cover_in(block.first - 1, b, False))
             self.out.mark(b)
             self._block(b)
         for label, number, source in self._stubs:
@@ -216,6 +240,8 @@ class Writer:
                 self._probes(self._head[b], cover)
             if k == block.last:
                 self._probes(self._tail[b], cover)
+            if k in self._returns:
+                self._leave_behind(self._returns[k], cover)
             if k in self._calls:
                 self._calls[k].guard(cover)
             if d.ops[k] == isa.YIELD_VALUE and k and d.ops[k - 1] == isa.SEND:
@@ -248,8 +274,12 @@ class Writer:
     def _enter(self, b: int) -> None:
         """Write the probe of a call: what it leaves on the stack stays there until the return."""
         if b == self._start and self._at_start is not None:
-            self.out.emit(_OP["LOAD_CONST"], self._probe_const[self._at_start])
-            self.out.emit(isa.FOR_ITER, 0)
+            self._leave_behind(self._at_start, None)
+
+    def _leave_behind(self, number: int, cover: Cover | None) -> None:
+        """Write a probe that does not clear up: the return does, with all of the frame."""
+        self.out.emit(_OP["LOAD_CONST"], self._probe_const[number], cover=cover)
+        self.out.emit(isa.FOR_ITER, 0, cover=cover)
 
     def _probes(self, numbers: list[int], cover: Cover | None) -> None:
         for number in numbers:
@@ -272,7 +302,10 @@ class Writer:
                 self.out.emit(self.decoded.ops[k], self.decoded.args[k])
         self._probe(number, None)
         target = self.graph.edges[number].target
-        self.out.emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=target)
+        if self.decoded.ops[last] in isa.CHECKED_JUMPS:
+            self.out.emit(_OP["JUMP_BACKWARD"], jump=target, origin=last, cover=self._cover(last))
+        else:
+            self.out.emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=target)
 
     def _recorder(self) -> None:
         """Write what keeps the place of a fresh exception, the exception on top of the stack."""
