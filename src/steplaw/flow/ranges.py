@@ -136,9 +136,9 @@ def _body(graph: Blocks, head: int, depth: list[int | None], level: int) -> froz
             body.add(b)
             todo.extend(before[b])
     keeping = {b for b, d in enumerate(depth) if d is not None and _keeps(graph, b, d, level)}
-    for handler in graph.decoded.handlers:
-        if handler is not None and handler.depth < level:
-            keeping.discard(graph.of[handler.target])
+    for entry in graph.decoded.handlers:
+        if entry is not None and entry.depth < level:
+            keeping.discard(graph.of[entry.target])
     _add_raising(graph, head, body, before, keeping)
     return frozenset(body)
 
