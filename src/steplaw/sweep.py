@@ -9,15 +9,19 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
+from fractions import Fraction
 
 from steplaw.host.limits import Failure
 from steplaw.host.runner import Run, RunFailed, Runner
+from steplaw.law.model import Law, Observation
 from steplaw.sizes import SizePlan
 
 #: Predicted steps beyond which a size that nobody asked for is left out.
 STEPS_A_RUN = 20_000_000
 STEPS_IN_ALL = 100_000_000
 INPUTS_A_SIZE = 50_000
+#: Sizes from which on the time left is told by the law found so far.
+SIZES_FOR_A_LAW = 6
 
 Point = tuple[int, ...]
 Report = Callable[[Mapping[str, int], int, int | None], None]
@@ -226,12 +230,39 @@ def _predicted_inputs(result: Sweep, point: Point, draws: int) -> float:
 
 
 def _rest(result: Sweep, todo: Sequence[Point], draws: int) -> int | None:
-    """Predict the steps still to run, by the growth so far."""
+    """Predict the steps still to run, by the law found so far or else by the growth."""
     total = 0.0
+    law = _law_so_far(result)
     for point in todo:
-        a_run = _predict(result, point)
+        if _is_too_long(result, point, draws, int(total)):
+            continue
+        a_run = _predict(result, point) if law is None else _by_law(law, point)
         if a_run is None:
             return None
-        if not _is_too_long(result, point, draws, int(total)):
-            total += a_run * _predicted_inputs(result, point, draws)
+        total += a_run * _predicted_inputs(result, point, draws)
     return int(total)
+
+
+def _law_so_far(result: Sweep) -> Law | None:
+    """Give the law of the steps run so far, None where there is none yet."""
+    from steplaw.law import find_law
+
+    seen = [
+        Observation(point, Fraction(sum(r.tally.steps * r.times for r in runs), inputs))
+        for point, runs in result.runs.items()
+        if (inputs := sum(r.times for r in runs))
+    ]
+    if len(seen) < SIZES_FOR_A_LAW:
+        return None
+    law = find_law(seen, result.names)
+    return None if law.formula is None else law
+
+
+def _by_law(law: Law, point: Point) -> float | None:
+    from steplaw.law import value
+
+    try:
+        steps = float(value(law, point))
+    except OverflowError:
+        return None
+    return steps if math.isfinite(steps) and steps > 0 else None

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import faulthandler
 import os
 import signal
 import time
@@ -36,6 +37,7 @@ def _exits() -> dict[str, Any]:
 
 
 def _killed() -> dict[str, Any]:
+    faulthandler.disable()
     os.kill(os.getpid(), signal.SIGSEGV)
     return {}
 

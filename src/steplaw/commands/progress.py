@@ -9,6 +9,9 @@ from contextlib import contextmanager
 
 from steplaw.job import Report
 
+#: Steps from which on their own rate tells the time left, and the rate that is taken before.
+TELLING, USUAL_RATE = 2_000_000, 2e7
+
 
 @contextmanager
 def progress() -> Iterator[Report | None]:
@@ -45,7 +48,10 @@ def progress() -> Iterator[Report | None]:
         def _left(done: int, rest: int | None) -> str:
             if not done or not rest:
                 return ""
-            seconds = (time.monotonic() - started) * rest / done
-            return f"about {seconds:.0f} s left, by the growth so far"
+            rate = done / (time.monotonic() - started)
+            if done < TELLING:  # the small sizes are all starting up and no steps
+                rate = max(rate, USUAL_RATE)
+            seconds = rest / rate
+            return f"about {seconds:.0f} s left, by the law so far"
 
         yield report
