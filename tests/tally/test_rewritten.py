@@ -55,6 +55,16 @@ def test_a_lost_exception_table_is_noticed(probed: Probed) -> None:
     assert any("lost its handler" in fault for fault in rewritten.faults(broken))
 
 
+def _only_raises() -> None:
+    raise
+
+
+def test_code_that_needs_no_stack_gets_room_for_the_recorder() -> None:
+    registry = Registry()
+    registry.rewrite(_only_raises.__code__)
+    assert list(rewritten.faults(registry.probed[0])) == []
+
+
 def test_moved_places_in_the_source_are_noticed(probed: Probed) -> None:
     moved = probed.code.co_firstlineno + 1
     broken = _changed(probed, code=probed.code.replace(co_firstlineno=moved))

@@ -23,7 +23,8 @@ from steplaw.tally.trips import Trips
 from steplaw.tally.writer import Writer, returns_constant
 
 FULL = sys.maxsize
-_EXTRA_STACK = 10
+#: The recorder around the body: two items of a call, place and exception, seven pushed.
+_EXTRA_STACK = 11
 #: Cost of a probe that is left on the stack, and of a loop's trip count at its entry,
 #: beside a probe that clears up behind itself.
 _CALL_COST, _TRIPS_COST = 0.5, 2.5
