@@ -9,7 +9,7 @@ from typing import Any
 
 from steplaw import series
 from steplaw.errors import CallError
-from steplaw.host.runner import Run
+from steplaw.host.asking import Run
 from steplaw.law import find_law, order
 from steplaw.law.model import Law, Observation
 from steplaw.repeat import Repeat

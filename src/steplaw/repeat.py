@@ -7,8 +7,8 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
+from steplaw.host.asking import Asker, Run, RunFailed
 from steplaw.host.limits import Failure
-from steplaw.host.runner import Run, RunFailed, Runner
 from steplaw.sweep import Point, Sweep
 
 SIZES = 8
@@ -48,12 +48,12 @@ class Repeat:
         return {"holds": self.holds, "checked_at": self.checked_at, "lines": self.lines}
 
 
-def run_again(runner: Runner, swept: Sweep) -> Repeat | None:
+def run_again(runner: Asker, swept: Sweep) -> Repeat | None:
     """Make some runs of a sweep again in another process.
 
     Parameters
     ----------
-    runner : Runner
+    runner : Asker
         A host of its own for the same study.
     swept : Sweep
         The first runs.

@@ -6,7 +6,7 @@ from collections.abc import Callable, Iterable, Mapping
 from fractions import Fraction
 from typing import TypeVar
 
-from steplaw.host.runner import Run
+from steplaw.host.asking import Run
 from steplaw.law.model import Observation
 from steplaw.sweep import Point, Sweep
 

@@ -11,8 +11,8 @@ from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
 from fractions import Fraction
 
+from steplaw.host.asking import Asker, Run, RunFailed
 from steplaw.host.limits import Failure
-from steplaw.host.runner import Run, RunFailed, Runner
 from steplaw.law.model import Law, Observation
 from steplaw.sizes import SizePlan
 
@@ -68,7 +68,7 @@ class Sweep:
 
 
 def sweep(
-    runner: Runner,
+    runner: Asker,
     plan: SizePlan,
     *,
     draws: int,
@@ -80,7 +80,7 @@ def sweep(
 
     Parameters
     ----------
-    runner : Runner
+    runner : Asker
         The subject.
     plan : SizePlan
         Sizes in the order to run them.
@@ -154,7 +154,7 @@ def interrupted(at: Mapping[str, int]) -> Failure:
 
 
 def _runs(
-    runner: Runner,
+    runner: Asker,
     at: Mapping[str, int],
     draws: int,
     result: Sweep,

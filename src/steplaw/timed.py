@@ -8,7 +8,7 @@ from typing import Any
 from steplaw import series
 from steplaw.clock import Timing, check
 from steplaw.errors import SteplawError
-from steplaw.host.runner import RunFailed, Runner
+from steplaw.host.asking import Asker, RunFailed
 from steplaw.law.model import Observation
 from steplaw.sweep import Sweep
 
@@ -41,13 +41,13 @@ def points_to_time(swept: Sweep) -> list[Observation]:
 
 
 def hold_against_clock(
-    runner: Runner, swept: Sweep, chosen: Sequence[Observation], draws: int
+    runner: Asker, swept: Sweep, chosen: Sequence[Observation], draws: int
 ) -> dict[str, Any]:
     """Time the untouched function and hold its steps against that.
 
     Parameters
     ----------
-    runner : Runner
+    runner : Asker
         A host without probes.
     swept : Sweep
         The counted runs.
