@@ -11,10 +11,12 @@ from typing import Any
 from steplaw.errors import CallError
 from steplaw.feed import size_text
 from steplaw.findings import Findings
+from steplaw.host.asking import Asker
 from steplaw.host.limits import Failure
 from steplaw.host.runner import Runner
 from steplaw.record import AuditRecord
 from steplaw.repeat import Repeat, run_again
+from steplaw.store import Kept, machine, open_store
 from steplaw.study import Study, make_study
 from steplaw.sweep import Sweep, interrupted, sweep
 from steplaw.timed import hold_against_clock, points_to_time, undecided
@@ -43,6 +45,7 @@ def audit(
     clock: bool = True,
     limit_seconds: float = 60.0,
     limit_memory: int = 4096,
+    fresh: bool = False,
 ) -> AuditRecord:
     """Find the law that a function's step count follows.
 
@@ -69,6 +72,8 @@ def audit(
         Wall-clock time of one run, in seconds.
     limit_memory : int
         Memory that one run may take, in megabytes.
+    fresh : bool
+        Whether everything is run anew, whatever the store has.
 
     Returns
     -------
@@ -99,6 +104,7 @@ def audit(
             clock=clock,
             limit_seconds=limit_seconds,
             limit_memory=limit_memory,
+            fresh=fresh,
         )
     )
     if record["stopped"] is not None and record["stopped"]["kind"] == "interrupted":
@@ -130,6 +136,7 @@ def run(study: Study, report: Report | None = None) -> AuditRecord:
         about = hosts.counting.about
         swept = _sweep(study, hosts.counting, report)
         repeat = _run_again(hosts.again, swept)
+        _keep_what_repeats(hosts, repeat)
         findings = Findings(swept, study.figure, about["loaded"], repeat)
         timed = _hold_against_clock(study, hosts.timing, swept, report)
     return AuditRecord(_record(study, about, swept, findings, repeat, timed))
@@ -137,26 +144,36 @@ def run(study: Study, report: Report | None = None) -> AuditRecord:
 
 @dataclass(frozen=True, slots=True)
 class _Hosts:
-    """The processes of an audit; the others load the subject while the first runs it."""
+    """What runs the subject of an audit; the others load it while the first runs it."""
 
-    counting: Runner
-    again: Runner
-    timing: Runner | None
+    counting: Asker
+    again: Asker
+    timing: Asker | None
 
 
 @contextmanager
 def _hosts(study: Study) -> Iterator[_Hosts]:
+    store = None if study.fresh else open_store()
     first = study.plan.points[min(2, len(study.plan.points) - 1)]
     asked = (study.subject, study.feed, study.plan.names, study.limits)
+
+    def host(question: Mapping[str, Any], **settings: Any) -> Asker:
+        if store is None:
+            return Runner(*asked, **settings)
+        settings["kept"] = True
+        return Kept(store, lambda: Runner(*asked, **settings), question, *asked, **settings)
+
     with ExitStack() as stack:
-        counting = stack.enter_context(Runner(*asked, first=first))
+        counting = stack.enter_context(host({}, first=first))
         counting.load()
-        again = stack.enter_context(Runner(*asked, first=first))
-        timing = stack.enter_context(Runner(*asked, probes=False)) if study.clock else None
+        again = stack.enter_context(host({"again": True}, first=first))
+        timing = None
+        if study.clock:
+            timing = stack.enter_context(host({"clock": machine()}, probes=False))
         yield _Hosts(counting, again, timing)
 
 
-def _sweep(study: Study, runner: Runner, report: Report | None) -> Sweep:
+def _sweep(study: Study, runner: Asker, report: Report | None) -> Sweep:
     def tell(at: Mapping[str, int], done: int, rest: int | None) -> None:
         if report is not None:
             report("counting", at, done, rest)
@@ -177,7 +194,7 @@ def _refuse_if_not_the_subjects(stopped: Failure) -> None:
         raise KeyboardInterrupt
 
 
-def _run_again(runner: Runner, swept: Sweep) -> Repeat | None:
+def _run_again(runner: Asker, swept: Sweep) -> Repeat | None:
     if _is_interrupted(swept):
         return None
     try:
@@ -188,7 +205,7 @@ def _run_again(runner: Runner, swept: Sweep) -> Repeat | None:
 
 
 def _hold_against_clock(
-    study: Study, runner: Runner | None, swept: Sweep, report: Report | None
+    study: Study, runner: Asker | None, swept: Sweep, report: Report | None
 ) -> dict[str, Any] | None:
     chosen = points_to_time(swept)
     if runner is None or not chosen:
@@ -202,6 +219,14 @@ def _hold_against_clock(
     except KeyboardInterrupt:
         swept.stopped = interrupted(swept.at(chosen[-1].at))
         return undecided("the clock check was interrupted")
+
+
+def _keep_what_repeats(hosts: _Hosts, repeat: Repeat | None) -> None:
+    """Take runs that turned out to differ out of the store again."""
+    if repeat is not None and not repeat.holds:
+        for host in (hosts.counting, hosts.again):
+            if isinstance(host, Kept):
+                host.forget()
 
 
 def _is_interrupted(swept: Sweep) -> bool:

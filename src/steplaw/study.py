@@ -44,6 +44,8 @@ class Study:
         Limits on one run.
     again : str
         The command that runs the study again.
+    fresh : bool
+        Whether everything is run anew, whatever the store has.
     """
 
     subject: SubjectRef
@@ -55,6 +57,7 @@ class Study:
     clock: bool = True
     limits: Limits = field(default_factory=Limits)
     again: str = ""
+    fresh: bool = False
 
     @property
     def every(self) -> bool:
@@ -75,6 +78,7 @@ def make_study(
     limit_seconds: float = 60.0,
     limit_memory: int = 4096,
     again: str = "",
+    fresh: bool = False,
 ) -> Study:
     """Check what was asked for and make a study of it.
 
@@ -102,6 +106,8 @@ def make_study(
         Memory that one run may take, in megabytes.
     again : str
         The command that runs the study again.
+    fresh : bool
+        Whether everything is run anew, whatever the store has.
 
     Raises
     ------
@@ -129,6 +135,7 @@ def make_study(
         clock=clock,
         limits=Limits(float(limit_seconds), int(limit_memory)),
         again=again or _command(ref, spec, asked, only_sizes, draws, figure),
+        fresh=fresh,
     )
 
 

@@ -14,6 +14,7 @@ COMMANDS = {
     "audit": "Find the law that a function's step count follows.",
     "tally": "Run a program under probes and count its steps.",
     "show": "Show a stored record.",
+    "store": "List, prune or export the finished runs that are kept.",
 }
 EPILOG = (
     "Auditing runs the subject's code. A law holds for the inputs it was found on. None of it is "

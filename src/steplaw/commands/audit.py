@@ -57,6 +57,7 @@ from steplaw.wording import listing
     metavar="MB",
     help="Most memory of one run.",
 )
+@click.option("--fresh", is_flag=True, help="Run everything anew, whatever the store has.")
 @click.option("--json", "json_path", metavar="PATH|-", help="Write the record there.")
 @click.option("--page", "page_path", metavar="PATH", help="Write the sheet as an HTML page.")
 def command(

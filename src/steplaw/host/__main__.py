@@ -11,7 +11,7 @@ import json
 import os
 import sys
 from collections.abc import Iterator
-from contextlib import suppress
+from contextlib import nullcontext, suppress
 from typing import Any
 
 from steplaw.errors import SteplawError
@@ -20,6 +20,7 @@ from steplaw.host.counted import CountedSubject, new_modules
 from steplaw.host.fork import Reply, failure, forked_stream, silence
 from steplaw.host.limits import Limits
 from steplaw.host.pickled import unpickling
+from steplaw.host.reach import Reach
 from steplaw.subject import Subject, SubjectRef, call, forget, locate
 from steplaw.wording import describe
 
@@ -29,11 +30,14 @@ class Host:
 
     def __init__(self, job: dict[str, Any]) -> None:
         self.limits = Limits(**job["limits"])
-        self.subject: Subject = locate(SubjectRef(**job["subject"]))
-        self.feed = self._feed(job)
+        self.reach = Reach() if job["kept"] else None
         self.counted: CountedSubject | None = None
+        with nullcontext() if self.reach is None else self.reach.importing():
+            self.subject: Subject = locate(SubjectRef(**job["subject"]))
+            self.feed = self._feed(job)
+            if job["probes"]:
+                self._import_late(job)
         if job["probes"]:
-            self._import_late(job)
             self.counted = CountedSubject(self.subject, self.feed)
 
     def _feed(self, job: dict[str, Any]) -> Feed:
@@ -58,23 +62,25 @@ class Host:
                 "notes": list(s.notes),
             },
             "feed": {"kind": self.feed.kind, "text": self.feed.text},
+            **({} if self.reach is None else {"code": self.reach.tell([s.code.__code__])}),
         }
 
     def answer(self, request: dict[str, Any]) -> Iterator[Reply]:
         """Run what a request asks for."""
         if request["do"] == "time":
-            return forked_stream(lambda: self._time(request), Limits(request["seconds"] * 3 + 30))
+            timing = Limits(request["seconds"] * 3 + 30)
+            return forked_stream(lambda: self._telling(self._time(request)), timing)
         assert self.counted is not None
         if request["do"] == "every":
             return self._every(self.counted, request["at"])
         counted, at, draw = self.counted, request["at"], request["draw"]
         feed = self._sent(request) if "input" in request else self.feed
-        return forked_stream(lambda: counted.draw(at, draw, feed), self.limits)
+        return forked_stream(lambda: self._telling(counted.draw(at, draw, feed)), self.limits)
 
     def _every(self, counted: CountedSubject, at: dict[str, int]) -> Iterator[Reply]:
         while True:
             widened = False
-            for reply in forked_stream(lambda: counted.every(at), self.limits):
+            for reply in forked_stream(lambda: self._telling(counted.every(at)), self.limits):
                 if "widen" in reply:
                     widened = True
                     counted.watch.widen(reply["widen"])
@@ -82,6 +88,23 @@ class Host:
                     yield reply
             if not widened:
                 return
+
+    def _telling(self, work: Iterator[Reply]) -> Iterator[Reply]:
+        """Add to the replies of a run what it depends on, before the one that says it failed."""
+        if self.reach is None:
+            yield from work
+            return
+        last: Reply | None = None
+        with self.reach.running():
+            for reply in work:
+                if "failed" in reply:
+                    last = reply
+                    break
+                yield reply
+        reached = None if self.counted is None else self.counted.reached()
+        yield {"code": self.reach.tell(reached)}
+        if last is not None:
+            yield last
 
     def _sent(self, request: dict[str, Any]) -> Feed:
         return unpickling(self.subject, request["input"], self.feed.text, request["random"])

@@ -89,6 +89,8 @@ class Asker(ABC):
         Whether runs are counted; without, the untouched function is timed.
     first : mapping of str to int, optional
         A small size, run once beforehand to find what the subject imports on its first call.
+    kept : bool
+        Whether the host is to tell what each answer depends on.
 
     Raises
     ------
@@ -105,6 +107,7 @@ class Asker(ABC):
         *,
         probes: bool = True,
         first: Size | None = None,
+        kept: bool = False,
     ) -> None:
         self.limits = limits or Limits()
         self._names = tuple(names)
@@ -118,6 +121,7 @@ class Asker(ABC):
             "limits": asdict(self.limits),
             "probes": probes,
             "first": self._first(first),
+            "kept": kept,
         }
 
     @abstractmethod
@@ -140,6 +144,10 @@ class Asker(ABC):
         wanted : sequence of (mapping, int or None)
             Size and draw; None for every input of the size.
         """
+
+    def request(self, at: Size, draw: int | None) -> dict[str, Any]:
+        """Give the request for one run, or for every input of a size where `draw` is None."""
+        return _every(at) if draw is None else _count(at, draw, self._sent(at, draw))
 
     def _first(self, at: Size | None) -> dict[str, Any] | None:
         if at is None:
@@ -204,7 +212,7 @@ class Asker(ABC):
         except FeedError as error:
             raise RunFailed(Failure("feed", str(error), dict(at), draw)) from None
         run = None
-        for reply in self._answers({"do": "count", "at": dict(at), "draw": draw, **sent}, at, draw):
+        for reply in self._answers(_count(at, draw, sent), at, draw):
             run = _run(at, draw, reply)
         if run is None:
             raise RunFailed(Failure("crash", "ended without a tally", at, draw))
@@ -226,7 +234,7 @@ class Asker(ABC):
             If the subject failed or ran past a limit.
         """
         runs = []
-        for reply in self._answers({"do": "every", "at": dict(at)}, at, 0):
+        for reply in self._answers(_every(at), at, 0):
             if "progress" in reply:
                 if progress is not None:
                     progress(reply["progress"])
@@ -272,7 +280,16 @@ class Asker(ABC):
                 raise RunFailed(Failure(failed["kind"], failed["message"], dict(at), draw))
             if "done" in reply:
                 return
-            yield reply
+            if "code" not in reply:
+                yield reply
+
+
+def _count(at: Size, draw: int, sent: Mapping[str, Any]) -> dict[str, Any]:
+    return {"do": "count", "at": dict(at), "draw": draw, **sent}
+
+
+def _every(at: Size) -> dict[str, Any]:
+    return {"do": "every", "at": dict(at)}
 
 
 def _sound(reply: Reply) -> Reply:

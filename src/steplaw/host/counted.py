@@ -5,6 +5,7 @@ from __future__ import annotations
 import random
 import sys
 from collections.abc import Iterator, Mapping
+from types import CodeType
 from typing import Any
 
 from steplaw import subject as subjects
@@ -38,6 +39,13 @@ class CountedSubject:
         self.registry = Registry()
         Installation(self.registry).enter()
         self.watch = Watch(self.registry)
+        self._loaded = Snapshot(self.registry)
+
+    def reached(self) -> list[CodeType]:
+        """Give the code that ran since the subject was loaded, its feed's included."""
+        unclear: list[str] = []
+        counts = counts_between(self._loaded, Snapshot(self.registry), unclear)
+        return [c.probed.original for c in counts]
 
     def draw(self, at: Size, draw: int, feed: Feed | None = None) -> Iterator[Reply]:
         """Count one run.

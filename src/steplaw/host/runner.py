@@ -26,7 +26,7 @@ class Runner(Asker):
 
     Parameters
     ----------
-    ref, feed, names, limits, probes, first
+    ref, feed, names, limits, probes, first, kept
         As for `Asker`.
 
     Raises
@@ -52,13 +52,14 @@ class Runner(Asker):
         *,
         probes: bool = True,
         first: Size | None = None,
+        kept: bool = False,
     ) -> None:
         if not hasattr(os, "fork"):
             raise CallError(
                 "runs are made in forked processes, which this system does not have",
                 "use Linux, macOS or the Windows Subsystem for Linux",
             )
-        super().__init__(ref, feed, names, limits, probes=probes, first=first)
+        super().__init__(ref, feed, names, limits, probes=probes, first=first, kept=kept)
         self._process, self._replies = self._start()
         self._ask(self.job)
 
