@@ -142,7 +142,8 @@ def documented_options(name: str) -> set[str]:
 def test_reference_has_every_option(name: str) -> None:
     command = steplaw.get_command(click.Context(steplaw), name)
     assert command is not None
-    options = [p for p in command.params if isinstance(p, click.Option)]
+    parts = command.commands.values() if isinstance(command, click.Group) else [command]
+    options = [p for part in parts for p in part.params if isinstance(p, click.Option)]
     known = {o for p in options for o in [*p.opts, *p.secondary_opts] if o.startswith("--")}
     needed = {p.opts[-1] for p in options if not p.secondary_opts and p.opts[-1].startswith("--")}
     needed |= {p.secondary_opts[0] for p in options if p.secondary_opts}
