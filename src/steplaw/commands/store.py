@@ -29,6 +29,9 @@ def command() -> None:
 @command.command("list")
 def list_() -> int:
     """List what is kept, by subject, the last used first."""
+    if default_path() is None:
+        say(f"the store is turned off by {VARIABLE}\n")
+        return 0
     store = _store()
     entries = store.entries()
     say(f"{store.path}\n")
