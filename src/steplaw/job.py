@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 import platform
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from contextlib import ExitStack, contextmanager
@@ -12,6 +13,7 @@ from steplaw.errors import CallError
 from steplaw.feed import size_text
 from steplaw.findings import Findings
 from steplaw.host.asking import Asker
+from steplaw.host.crew import Crew, Crewed
 from steplaw.host.limits import Failure
 from steplaw.host.runner import Runner
 from steplaw.record import AuditRecord
@@ -46,6 +48,8 @@ def audit(
     limit_seconds: float = 60.0,
     limit_memory: int = 4096,
     fresh: bool = False,
+    processes: int | None = None,
+    cluster: str | None = None,
 ) -> AuditRecord:
     """Find the law that a function's step count follows.
 
@@ -74,6 +78,10 @@ def audit(
         Memory that one run may take, in megabytes.
     fresh : bool
         Whether everything is run anew, whatever the store has.
+    processes : int, optional
+        Runs made at once; as many as there are processors by default.
+    cluster : str, optional
+        Address of a Dask scheduler whose workers make the runs.
 
     Returns
     -------
@@ -105,6 +113,8 @@ def audit(
             limit_seconds=limit_seconds,
             limit_memory=limit_memory,
             fresh=fresh,
+            processes=processes,
+            cluster=cluster,
         )
     )
     if record["stopped"] is not None and record["stopped"]["kind"] == "interrupted":
@@ -157,13 +167,21 @@ def _hosts(study: Study) -> Iterator[_Hosts]:
     first = study.plan.points[min(2, len(study.plan.points) - 1)]
     asked = (study.subject, study.feed, study.plan.names, study.limits)
 
-    def host(question: Mapping[str, Any], **settings: Any) -> Asker:
-        if store is None:
-            return Runner(*asked, **settings)
-        settings["kept"] = True
-        return Kept(store, lambda: Runner(*asked, **settings), question, *asked, **settings)
-
     with ExitStack() as stack:
+        crew = _crew(study, stack)
+        ahead = 0 if crew is None else 2 * crew.size
+
+        def host(question: Mapping[str, Any], **settings: Any) -> Asker:
+            def make() -> Asker:
+                if crew is None or not settings.get("probes", True):
+                    return Runner(*asked, **settings)
+                return Crewed(crew, *asked, **settings)
+
+            if store is None:
+                return make()
+            settings["kept"] = True
+            return Kept(store, make, question, *asked, ahead=ahead, **settings)
+
         counting = stack.enter_context(host({}, first=first))
         counting.load()
         again = stack.enter_context(host({"again": True}, first=first))
@@ -171,6 +189,13 @@ def _hosts(study: Study) -> Iterator[_Hosts]:
         if study.clock:
             timing = stack.enter_context(host({"clock": machine()}, probes=False))
         yield _Hosts(counting, again, timing)
+
+
+def _crew(study: Study, stack: ExitStack) -> Crew | None:
+    """Give what makes runs at once, None where they are made one after the other."""
+    if study.cluster is None and (study.processes or os.cpu_count() or 1) == 1:
+        return None
+    return stack.enter_context(Crew(study.processes, study.cluster))
 
 
 def _sweep(study: Study, runner: Asker, report: Report | None) -> Sweep:

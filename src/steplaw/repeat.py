@@ -9,7 +9,7 @@ from typing import Any
 
 from steplaw.host.asking import Asker, Run, RunFailed
 from steplaw.host.limits import Failure
-from steplaw.sweep import Point, Sweep
+from steplaw.sweep import STEPS_AHEAD, Point, Sweep
 
 SIZES = 8
 INPUTS_A_SIZE = 1000
@@ -64,7 +64,11 @@ def run_again(runner: Asker, swept: Sweep) -> Repeat | None:
         None where nothing was run again.
     """
     repeat = Repeat([], [], [])
-    for point in _chosen(swept):
+    chosen = _chosen(swept)
+    if runner.ahead:
+        draw = None if swept.whole else 0
+        runner.expect([(swept.at(p), draw) for p in chosen if _is_long(swept.runs[p])])
+    for point in chosen:
         at, first = swept.at(point), swept.runs[point]
         try:
             second = runner.every(at) if swept.whole else [runner.count(at, 0)]
@@ -76,6 +80,10 @@ def run_again(runner: Asker, swept: Sweep) -> Repeat | None:
         repeat.checked_at.append(at)
         repeat.lines.extend(unequal(at, first if swept.whole else first[:1], second))
     return repeat if repeat.checked_at or repeat.failures else None
+
+
+def _is_long(runs: Sequence[Run]) -> bool:
+    return sum(r.tally.steps * r.times for r in runs) >= STEPS_AHEAD
 
 
 def _chosen(swept: Sweep) -> list[Point]:

@@ -46,6 +46,10 @@ class Study:
         The command that runs the study again.
     fresh : bool
         Whether everything is run anew, whatever the store has.
+    processes : int, optional
+        Runs made at once; as many as there are processors by default.
+    cluster : str, optional
+        Address of a Dask scheduler whose workers make the runs.
     """
 
     subject: SubjectRef
@@ -58,6 +62,8 @@ class Study:
     limits: Limits = field(default_factory=Limits)
     again: str = ""
     fresh: bool = False
+    processes: int | None = None
+    cluster: str | None = None
 
     @property
     def every(self) -> bool:
@@ -79,6 +85,8 @@ def make_study(
     limit_memory: int = 4096,
     again: str = "",
     fresh: bool = False,
+    processes: int | None = None,
+    cluster: str | None = None,
 ) -> Study:
     """Check what was asked for and make a study of it.
 
@@ -108,6 +116,10 @@ def make_study(
         The command that runs the study again.
     fresh : bool
         Whether everything is run anew, whatever the store has.
+    processes : int, optional
+        Runs made at once; as many as there are processors by default.
+    cluster : str, optional
+        Address of a Dask scheduler whose workers make the runs.
 
     Raises
     ------
@@ -120,6 +132,8 @@ def make_study(
         raise CallError(f"--draws {draws} makes no input", "give 1 or more")
     if limit_seconds <= 0 or limit_memory <= 0:
         raise CallError("a limit must be above 0", "as in --limit-seconds 10 --limit-memory 2048")
+    if processes is not None and processes < 1:
+        raise CallError(f"--processes {processes} makes no run", "give 1 or more")
     check_figure(figure)
     if isinstance(sizes, int):
         sizes = [sizes]
@@ -136,6 +150,8 @@ def make_study(
         limits=Limits(float(limit_seconds), int(limit_memory)),
         again=again or _command(ref, spec, asked, only_sizes, draws, figure),
         fresh=fresh,
+        processes=processes,
+        cluster=cluster,
     )
 
 

@@ -20,6 +20,8 @@ from steplaw.sizes import SizePlan
 STEPS_A_RUN = 20_000_000
 STEPS_IN_ALL = 100_000_000
 INPUTS_A_SIZE = 50_000
+#: Predicted steps from which on a run is worth being begun ahead of time.
+STEPS_AHEAD = 1_000_000
 #: Sizes from which on the time left is told by the law found so far.
 SIZES_FOR_A_LAW = 6
 
@@ -106,6 +108,12 @@ def sweep(
         if point not in wanted and _is_too_long(result, point, draws, spent):
             result.left_out.append(point)
             continue
+        _expect(
+            runner,
+            result,
+            [p for p in todo[place:] if p in wanted or not _is_too_long(result, p, draws, spent)],
+            draws,
+        )
         tell = _teller(report, result, todo[place:], draws, spent)
         tell(0)
         try:
@@ -124,6 +132,24 @@ def sweep(
     if not result.runs and result.passed_over and result.stopped is None:
         result.stopped = result.passed_over.pop()
     return result
+
+
+def _expect(runner: Asker, result: Sweep, todo: Sequence[Point], draws: int) -> None:
+    """Say which runs may be made ahead of time: long ones, of which several are at work at once."""
+    wanted = [
+        (result.at(point), draw)
+        for point in todo[: runner.ahead]
+        if (_predict(result, point) or 0) * _predicted_inputs(result, point, draws) >= STEPS_AHEAD
+        for draw in _draws_of(result, draws)
+    ]
+    if len(wanted) > 1:
+        runner.expect(wanted[: runner.ahead])
+
+
+def _draws_of(result: Sweep, draws: int) -> Sequence[int | None]:
+    if result.whole:
+        return [None]
+    return range(draws if result.varies else 1)
 
 
 def _teller(

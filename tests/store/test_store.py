@@ -49,13 +49,13 @@ def place(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
 def started(monkeypatch: pytest.MonkeyPatch) -> list[str]:
     """The hosts that were started."""
     begun: list[str] = []
-    start = runner.Runner._start
+    start = runner.HostProcess._start
 
-    def note(self: runner.Runner) -> Any:
+    def note(self: runner.HostProcess) -> Any:
         begun.append(self.subject)
         return start(self)
 
-    monkeypatch.setattr(runner.Runner, "_start", note)
+    monkeypatch.setattr(runner.HostProcess, "_start", note)
     return begun
 
 

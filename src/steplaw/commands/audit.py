@@ -58,6 +58,10 @@ from steplaw.wording import listing
     help="Most memory of one run.",
 )
 @click.option("--fresh", is_flag=True, help="Run everything anew, whatever the store has.")
+@click.option(
+    "--processes", type=int, metavar="N", help="Runs made at once; all processors by default."
+)
+@click.option("--cluster", metavar="ADDRESS", help="A Dask scheduler whose workers make the runs.")
 @click.option("--json", "json_path", metavar="PATH|-", help="Write the record there.")
 @click.option("--page", "page_path", metavar="PATH", help="Write the sheet as an HTML page.")
 def command(
@@ -102,6 +106,10 @@ def _told(stopped: Mapping[str, Any], subject: str) -> str:
     return f"{who} {stopped['message']} (at {size})"
 
 
+#: Where the record goes and where the runs are made: no part of what is audited.
+_WITH_VALUE = ("--json", "--page", "--processes", "--cluster")
+
+
 def _again() -> str:
     words = sys.argv[1:]
     kept: list[str] = []
@@ -109,8 +117,8 @@ def _again() -> str:
     for word in words:
         if skip:
             skip = False
-        elif word in ("--json", "--page"):
+        elif word in _WITH_VALUE:
             skip = True
-        elif not word.startswith(("--json=", "--page=")):
+        elif word != "--fresh" and not word.startswith(tuple(f"{w}=" for w in _WITH_VALUE)):
             kept.append(word)
     return shlex.join(["steplaw", *kept])

@@ -124,6 +124,9 @@ class Asker(ABC):
             "kept": kept,
         }
 
+    #: How many runs ahead it is of use to `expect`.
+    ahead = 0
+
     @abstractmethod
     def introduce(self) -> Reply:
         """Give the subject and its feed, as the host describes them, or an ``error``."""

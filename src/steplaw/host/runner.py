@@ -18,50 +18,42 @@ from steplaw.host.asking import Asker, Reply, Run, RunFailed, Size
 from steplaw.host.limits import Limits
 from steplaw.subject import SubjectRef
 
-__all__ = ["Run", "RunFailed", "Runner"]
+__all__ = ["HostProcess", "Run", "RunFailed", "Runner"]
 
 
-class Runner(Asker):
-    """A host with one subject loaded.
+class HostProcess:
+    """A host: a process of its own that loads one subject and does what it is asked.
 
     Parameters
     ----------
-    ref, feed, names, limits, probes, first, kept
-        As for `Asker`.
+    job : mapping
+        As `Asker.job` gives.
 
     Raises
     ------
     CallError
-        If this system has no forks, or a feed given in Python cannot be used.
+        If this system has no forks.
 
     Notes
     -----
-    The host is started and left to load the subject: the first use of `about`, or the first run,
-    waits for it and raises what went wrong. So several of them load at the same time.
+    It is started and left to load the subject: `introduce` waits for that. So several of them load
+    at the same time.
     """
 
     #: Longest time to load a subject, in seconds, where the limit on a run is not above it.
     LOAD_SECONDS = 60.0
 
-    def __init__(
-        self,
-        ref: SubjectRef,
-        feed: FeedSpec | None,
-        names: Sequence[str] = ("n",),
-        limits: Limits | None = None,
-        *,
-        probes: bool = True,
-        first: Size | None = None,
-        kept: bool = False,
-    ) -> None:
+    def __init__(self, job: Mapping[str, Any]) -> None:
         if not hasattr(os, "fork"):
             raise CallError(
                 "runs are made in forked processes, which this system does not have",
                 "use Linux, macOS or the Windows Subsystem for Linux",
             )
-        super().__init__(ref, feed, names, limits, probes=probes, first=first, kept=kept)
+        subject = job["subject"]
+        self.subject = f"{subject['place']}:{subject['name']}"
+        self._seconds = max(self.LOAD_SECONDS, job["limits"]["seconds"])
         self._process, self._replies = self._start()
-        self._ask(self.job)
+        self._ask(job)
 
     def _start(self) -> tuple[subprocess.Popen[bytes], TextIO]:
         reading, writing = os.pipe()
@@ -77,9 +69,8 @@ class Runner(Asker):
 
     def introduce(self) -> Reply:
         """Wait until the subject is loaded."""
-        seconds = max(self.LOAD_SECONDS, self.limits.seconds)
-        if not select.select([self._replies], [], [], seconds)[0]:
-            raise SubjectError(f"{self.subject} takes more than {seconds:g} s to import")
+        if not select.select([self._replies], [], [], self._seconds)[0]:
+            raise SubjectError(f"{self.subject} takes more than {self._seconds:g} s to import")
         return self._reply()
 
     def answers(self, request: Mapping[str, Any]) -> Iterator[Reply]:
@@ -122,6 +113,47 @@ class Runner(Asker):
             )
         reply: dict[str, Any] = json.loads(line)
         return reply
+
+
+class Runner(Asker):
+    """Asks a host of its own.
+
+    Parameters
+    ----------
+    ref, feed, names, limits, probes, first, kept
+        As for `Asker`.
+
+    Raises
+    ------
+    CallError
+        If this system has no forks, or a feed given in Python cannot be used.
+    """
+
+    def __init__(
+        self,
+        ref: SubjectRef,
+        feed: FeedSpec | None,
+        names: Sequence[str] = ("n",),
+        limits: Limits | None = None,
+        *,
+        probes: bool = True,
+        first: Size | None = None,
+        kept: bool = False,
+    ) -> None:
+        super().__init__(ref, feed, names, limits, probes=probes, first=first, kept=kept)
+        self._host = HostProcess(self.job)
+
+    def introduce(self) -> Reply:
+        """Wait until the subject is loaded."""
+        return self._host.introduce()
+
+    def answers(self, request: Mapping[str, Any]) -> Iterator[Reply]:
+        """Have the host do what is asked."""
+        return self._host.answers(request)
+
+    def close(self) -> None:
+        """End the host and whatever runs in it."""
+        self._host.close()
 
 
 def _ended(status: int) -> str:

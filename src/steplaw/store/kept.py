@@ -31,7 +31,9 @@ class Kept(Asker):
         Gives what runs the subject, when something must be run.
     question : mapping
         What else tells these runs from others of the same subject.
-    **job
+    ahead : int
+        How many runs ahead what runs the subject makes use of.
+    *job, **settings
         As for `Asker`.
     """
 
@@ -41,9 +43,11 @@ class Kept(Asker):
         make: Callable[[], Asker],
         question: Mapping[str, Any],
         *job: Any,
+        ahead: int = 0,
         **settings: Any,
     ) -> None:
         super().__init__(*job, **settings)
+        self.ahead = ahead
         self._store = store
         self._make = make
         self._made: Asker | None = None
@@ -53,6 +57,7 @@ class Kept(Asker):
             **{name: value for name, value in self.job.items() if name != "limits"},
         }
         self._questions: list[str] = []
+        self._expected: set[str] = set()
 
     @property
     def runs(self) -> Asker:
@@ -104,11 +109,13 @@ class Kept(Asker):
 
     def expect(self, wanted: Sequence[tuple[Size, int | None]]) -> None:
         """Pass on what the store does not have."""
-        missing = [
-            (at, draw)
-            for at, draw in wanted
-            if self._store.find(self._question(self.request(at, draw))) is None
-        ]
+        missing = []
+        for at, draw in wanted:
+            question = self._question(self.request(at, draw))
+            if question not in self._expected:
+                self._expected.add(question)
+                if self._store.find(question) is None:
+                    missing.append((at, draw))
         if missing:
             self.runs.expect(missing)
 
