@@ -205,11 +205,28 @@ class TallyRecord(Record):
         return "\n".join(_printable(row) for row in rows)
 
 
-RECORDS: dict[str, type[Record]] = {kind.schema_name: kind for kind in (AuditRecord, TallyRecord)}
+class DeriveRecord(Record):
+    """The finished derivation, a `steplaw.derive/1` record."""
+
+    schema_name = "steplaw.derive/1"
+    schema_file = "derive-1.schema.json"
+
+    def __repr__(self) -> str:
+        subject, law = self["subject"], self["total"]
+        rows = [f"derivation of {subject['name']} at {subject['file']}:{subject['line']}"]
+        rows.append(f"  steps = {law['formula'] or 'no formula'} ({law['grade']})")
+        rows += [f"  {u['name']}: line {u['line']}, {u['what']}" for u in self["unknowns"]]
+        rows += [f"  stopped at line {s['line']}: {s['reason']}" for s in self["stopped_by"]]
+        return "\n".join(_printable(row) for row in rows)
+
+
+RECORDS: dict[str, type[Record]] = {
+    kind.schema_name: kind for kind in (AuditRecord, TallyRecord, DeriveRecord)
+}
 
 
 def read(path: str | Path) -> Record:
-    """Read a stored record of either kind.
+    """Read a stored record of any kind.
 
     Parameters
     ----------

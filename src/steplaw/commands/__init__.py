@@ -12,6 +12,7 @@ from steplaw.errors import SteplawError
 
 COMMANDS = {
     "audit": "Find the law that a function's step count follows.",
+    "derive": "Work out from the source how often each line runs.",
     "tally": "Run a program under probes and count its steps.",
     "show": "Show a stored record.",
     "store": "List, prune or export the finished runs that are kept.",

@@ -83,6 +83,7 @@ def show(record: Record, *, error: bool = False) -> None:
     from rich.console import Console
 
     from steplaw.faces.terminal import show as show_sheet
+    from steplaw.faces.terminal_derive import show_derivation
     from steplaw.faces.terminal_tally import show_tally
 
     class Screen(Console):
@@ -90,8 +91,8 @@ def show(record: Record, *, error: bool = False) -> None:
             self.quiet = True
             nobody_reads(self.file)
 
-    face = show_tally if record["schema"] == "steplaw.tally/1" else show_sheet
-    face(record, Screen(stderr=error, highlight=False))
+    faces = {"steplaw.tally/1": show_tally, "steplaw.derive/1": show_derivation}
+    faces.get(record["schema"], show_sheet)(record, Screen(stderr=error, highlight=False))
 
 
 def say(text: str) -> None:

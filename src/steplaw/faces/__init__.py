@@ -7,6 +7,7 @@ from typing import Any
 
 from steplaw.errors import CallError
 
+_NAMED = {"steplaw.tally/1": "a tally", "steplaw.derive/1": "a derivation"}
 KINDS = ("terminal", "page", "markdown", "json")
 
 
@@ -16,7 +17,7 @@ def render(record: Mapping[str, Any], as_: str, width: int = 80) -> str:
     Parameters
     ----------
     record : mapping
-        A `steplaw.audit/1` or `steplaw.tally/1` record.
+        A record of any schema of steplaw.
     as_ : {"terminal", "page", "markdown", "json"}
         The face.
     width : int
@@ -32,7 +33,7 @@ def render(record: Mapping[str, Any], as_: str, width: int = 80) -> str:
     CallError
         If there is no such face, or it cannot show this kind of record.
     """
-    tally = record.get("schema") == "steplaw.tally/1"
+    kind = str(record.get("schema"))
     if as_ == "terminal":
         from steplaw.faces.terminal import text
 
@@ -43,8 +44,8 @@ def render(record: Mapping[str, Any], as_: str, width: int = 80) -> str:
         return json.dumps(record, indent=2) + "\n"
     if as_ not in KINDS:
         raise CallError(f"there is no face {as_!r}", f"give one of {', '.join(KINDS)}")
-    if tally:
-        raise CallError(f"a tally has no {as_} face", "give --as terminal or --as json")
+    if kind != "steplaw.audit/1":
+        raise CallError(f"{_NAMED.get(kind, 'this')} has no {as_} face", "give --as terminal")
     if as_ == "page":
         from steplaw.faces.page import page
 

@@ -52,7 +52,7 @@ def text(record: Json, width: int = 80) -> str:
     Parameters
     ----------
     record : mapping
-        An audit or a tally record.
+        A record of any schema of steplaw.
     width : int
         Columns.
 
@@ -65,7 +65,11 @@ def text(record: Json, width: int = 80) -> str:
 
     out = io.StringIO()
     console = Console(file=out, width=width, force_terminal=False, color_system=None)
-    if record.get("schema") == "steplaw.tally/1":
+    if record.get("schema") == "steplaw.derive/1":
+        from steplaw.faces.terminal_derive import show_derivation
+
+        show_derivation(record, console)
+    elif record.get("schema") == "steplaw.tally/1":
         from steplaw.faces.terminal_tally import show_tally
 
         show_tally(record, console)
