@@ -7,11 +7,13 @@ from collections.abc import Callable, Mapping, Sequence
 from fractions import Fraction
 from typing import Any
 
-from steplaw import series
+from steplaw import costs, series
+from steplaw.costs import Costs
 from steplaw.errors import CallError
 from steplaw.host.asking import Run
 from steplaw.law import find_law, order
 from steplaw.law.model import Law, Observation
+from steplaw.native import NativeFindings
 from steplaw.repeat import Repeat
 from steplaw.sweep import Sweep
 
@@ -32,6 +34,8 @@ class Findings:
         The subject, as the host describes it.
     repeat : Repeat or None
         What differed between equal runs: no law is claimed for that.
+    own : Costs, optional
+        The team's own weights, which the figure `cost` is made from.
     """
 
     def __init__(
@@ -40,7 +44,9 @@ class Findings:
         figure: str,
         loaded: Mapping[str, Any],
         repeat: Repeat | None,
+        own: Costs | None = None,
     ) -> None:
+        self.costs = own if figure == "cost" else None
         self.sweep = sweep
         self.name = figure
         self.loaded = loaded
@@ -53,6 +59,7 @@ class Findings:
         self._check_line()
         self._largest = max(sweep.runs, default=None)
         self._total = self._at_largest(series.of(sweep, _steps))
+        self.native = NativeFindings(sweep, self._law, loaded["file"], self.unsteady)
         self.figure_law = self._figure_law()
 
     def _law(self, observations: Sequence[Observation], changed: bool = False) -> Law:
@@ -93,19 +100,22 @@ class Findings:
                 "lines that did: " + ", ".join(map(str, ran)),
             )
 
-    def _read(self) -> Callable[[Run], int]:
+    def _read(self) -> Callable[[Run], int | Fraction]:
         if self.name == "steps":
             return _steps
         if self.name.startswith("line:"):
             key = (self.loaded["file"], int(self.name[5:]))
             return lambda run: series.lines(run).get(key, (0, 0))[0]
-        return lambda run: run.tally.operations.get(self.name, 0)
+        read = costs.reader(self.name) if self.costs is None else self.costs.of
+        return lambda run: read(run.tally)
 
     def _figure_law(self) -> Law:
         changed = self.unsteady
         if self.name.startswith("line:"):
             changed = (self.loaded["file"], int(self.name[5:])) in self.changed
-        return self._law(series.of(self.sweep, self._read()), changed)
+        law = self._law(series.of(self.sweep, self._read()), changed)
+        whole = self.name in ("native", "work", "elements") or self.name == "cost"
+        return self.native.bounded(law) if whole else law
 
     def figure(self) -> dict[str, Any]:
         """Give the record's ``figure``."""
@@ -126,7 +136,7 @@ class Findings:
             "values": [self._value(o, read) for o in observations],
         }
 
-    def _value(self, o: Observation, read: Callable[[Run], int]) -> dict[str, Any]:
+    def _value(self, o: Observation, read: Callable[[Run], int | Fraction]) -> dict[str, Any]:
         out = {
             "at": self.sweep.at(o.at),
             "draws": o.draws,
@@ -152,7 +162,7 @@ class Findings:
                     "steps": run.tally.steps,
                     "own_steps": run.own_steps,
                     "operations": dict(run.tally.operations),
-                    "native": None,
+                    "native": run.tally.native,
                 }
                 if self.sweep.whole:
                     entry["inputs"] = run.times
@@ -168,7 +178,9 @@ class Findings:
         split = any(o.value for o in data)
         return {
             "steps": self._law(series.of(self.sweep, _steps), changed).as_json(),
-            "native": None,
+            "native": self.native.law(lambda run: run.tally.native or 0),
+            "work": self.native.law(lambda run: costs.work(run.tally)),
+            "elements": self.native.law(lambda run: costs.elements(run.tally)),
             "operations": {
                 name: self._law(operations[name], changed).as_json() for name in sorted(operations)
             },

@@ -287,6 +287,7 @@ def _record(
         "laws": findings.laws(),
         "lines": findings.lines(),
         "functions": findings.functions(),
+        "ledger": findings.native.ledger(),
         "clock": timed,
         "repeatable": None if repeat is None else repeat.as_json(),
         "stopped": None if swept.stopped is None else swept.stopped.as_json(),

@@ -11,7 +11,7 @@ from steplaw.law.model import Observation
 from steplaw.sweep import Point, Sweep
 
 K = TypeVar("K")
-Values = dict[Point, list[tuple[int, int]]]
+Values = dict[Point, list[tuple[int | Fraction, int]]]
 Site = tuple[str, str, int, int, int]
 
 
@@ -28,8 +28,8 @@ def observations(values: Values, whole: bool) -> list[Observation]:
     out = []
     for point, pairs in values.items():
         inputs = sum(times for _, times in pairs)
-        mean = Fraction(sum(v * times for v, times in pairs), inputs)
-        square = Fraction(sum(v * v * times for v, times in pairs), inputs)
+        mean = Fraction(sum(v * times for v, times in pairs)) / inputs
+        square = Fraction(sum(v * v * times for v, times in pairs)) / inputs
         out.append(
             Observation(
                 at=point,
@@ -44,7 +44,7 @@ def observations(values: Values, whole: bool) -> list[Observation]:
     return sorted(out, key=lambda o: o.at)
 
 
-def of(sweep: Sweep, read: Callable[[Run], int]) -> list[Observation]:
+def of(sweep: Sweep, read: Callable[[Run], int | Fraction]) -> list[Observation]:
     """Give the observations of one figure of every run.
 
     Parameters

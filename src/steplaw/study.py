@@ -9,6 +9,7 @@ from typing import Any
 
 from steplaw import feed as feeds
 from steplaw import subject as subjects
+from steplaw.costs import WHOLE
 from steplaw.errors import CallError
 from steplaw.feed import FeedSpec
 from steplaw.host.limits import Limits
@@ -227,12 +228,12 @@ def check_figure(figure: str) -> None:
     CallError
         With the figures that there are.
     """
-    if figure == "steps" or figure in CLASSES:
+    if figure in WHOLE or figure in CLASSES:
         return
     kind, _, number = figure.partition(":")
     if kind == "line" and number.isdigit():
         return
     raise CallError(
         f"there is no figure '{figure}'",
-        "figures are steps, line:N (N a line number), " + ", ".join(CLASSES),
+        "figures are line:N (N a line number), " + ", ".join((*WHOLE, *CLASSES)),
     )

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import gc
+import os
 import sys
 import traceback
 import types
@@ -17,6 +18,9 @@ from steplaw.tally import Counter, Tally, counting
 Make = Callable[[], Callable[[], Any]]
 HARNESS = {str(Path(__file__)), str(Path(__file__).parents[1] / "referee.py")}
 MODULE = "program"
+
+#: Count with the native ledger as well: no count, result or traceback may differ for it.
+WITH_LEDGER = bool(os.environ.get("STEPLAW_LEDGER"))
 
 
 def from_source(source: str) -> Make:
@@ -60,7 +64,7 @@ def differences(make: Make) -> list[str]:
 def _probed(call: Callable[[], Any]) -> tuple[Counter, Any]:
     result: Any = None
     error: BaseException | None = None
-    with steady(), counting() as counter:
+    with steady(), counting(ledger=WITH_LEDGER) as counter:
         try:
             result = call()
         except BaseException as fault:

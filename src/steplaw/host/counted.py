@@ -17,6 +17,7 @@ from steplaw.tally.assembled import tally_of
 from steplaw.tally.install import Installation
 from steplaw.tally.registry import Registry
 from steplaw.tally.snapshot import CodeCounts, Snapshot, counts_between
+from steplaw.toll.ledger import LEDGER, Taken
 from steplaw.wording import describe
 
 Size = Mapping[str, int]
@@ -36,7 +37,7 @@ class CountedSubject:
     def __init__(self, subject: Subject, feed: Feed) -> None:
         self.subject = subject
         self.feed = feed
-        self.registry = Registry()
+        self.registry = Registry(watched=True)
         Installation(self.registry).enter()
         self.watch = Watch(self.registry)
         self._loaded = Snapshot(self.registry)
@@ -71,6 +72,7 @@ class CountedSubject:
             return
         self._fresh()
         before = Snapshot(self.registry)
+        LEDGER.take()
         try:
             result = subjects.call(self.subject, made.args, made.kwargs)
         except (SystemExit, MemoryError):
@@ -78,8 +80,9 @@ class CountedSubject:
         except BaseException as error:
             yield failure("raised", _raised(error, self.subject))
             return
+        taken = LEDGER.take()
         codes = list(counts_between(before, Snapshot(self.registry)))
-        reply = self._reply(codes)
+        reply = self._reply(codes, taken)
         reply["random"] = made.random
         reply["unread"] = subjects.unread(result)
         yield reply
@@ -116,6 +119,7 @@ class CountedSubject:
             text = _shown(made)
             self._fresh()
             before = self.watch.readings()
+            LEDGER.take()
             try:
                 subjects.call(self.subject, made.args, made.kwargs)
             except (SystemExit, MemoryError):
@@ -123,8 +127,10 @@ class CountedSubject:
             except BaseException as error:
                 yield failure("raised", f"{_raised(error, self.subject)} on input {text}")
                 return
+            taken = LEDGER.take()
             after = self.watch.readings()
-            seen = distinct.setdefault(change(before, after), [0, number, text, before, after])
+            key = change(before, after), taken
+            seen = distinct.setdefault(key, [0, number, text, before, after])
             seen[0] += 1
             if number % 256 == 255:
                 yield {"progress": number + 1}
@@ -133,13 +139,13 @@ class CountedSubject:
         if unwatched:
             yield {"widen": unwatched}
             return
-        for times, number, text, before, after in distinct.values():
+        for (_, taken), (times, number, text, before, after) in distinct.items():
             codes = [
                 CodeCounts(probed, before.get(probed), reading)
                 for probed, reading in after.items()
                 if before.get(probed) != reading
             ]
-            reply = self._reply(codes)
+            reply = self._reply(codes, taken)
             reply.update(times=times, first=number, input=text)
             yield reply
 
@@ -152,8 +158,8 @@ class CountedSubject:
         subjects.forget(self.subject)
         random.seed()
 
-    def _reply(self, codes: list[CodeCounts]) -> Reply:
-        tally = tally_of(codes)
+    def _reply(self, codes: list[CodeCounts], taken: Taken) -> Reply:
+        tally = tally_of(codes, taken=taken)
         own = self.subject.code.__code__
         original = self.registry.original(own)
         return {

@@ -10,9 +10,10 @@ import sys
 from types import CodeType, ModuleType
 from typing import Any
 
-from steplaw.tally.install import Installation, hidden
+from steplaw.tally.install import Installation
 from steplaw.tally.registry import Registry
 from steplaw.tally.snapshot import Snapshot
+from steplaw.toll.hidden import hidden
 
 Baseline = tuple[set[str], dict[str, Any]]
 _run = builtins.exec

@@ -7,11 +7,14 @@ from collections.abc import Sequence
 from steplaw.flow import isa
 from steplaw.tally.classes import operations
 from steplaw.tally.lines import line_counts
-from steplaw.tally.model import FunctionCount, LineCount, Tally
+from steplaw.tally.model import FunctionCount, LineCount, NativeCount, Tally, Uncharged
 from steplaw.tally.snapshot import CodeCounts
+from steplaw.toll.ledger import Taken
 
 
-def tally_of(counts: Sequence[CodeCounts], notes: Sequence[str] = ()) -> Tally:
+def tally_of(
+    counts: Sequence[CodeCounts], notes: Sequence[str] = (), taken: Taken | None = None
+) -> Tally:
     """Add up the counts of all code objects.
 
     Parameters
@@ -20,6 +23,8 @@ def tally_of(counts: Sequence[CodeCounts], notes: Sequence[str] = ()) -> Tally:
         One for each code object that ran.
     notes : sequence of str
         What keeps the counts from being exact.
+    taken : tuple, optional
+        What `Ledger.take` gave for the stretch.
 
     Returns
     -------
@@ -60,4 +65,6 @@ def tally_of(counts: Sequence[CodeCounts], notes: Sequence[str] = ()) -> Tally:
         ),
         lines=tuple(LineCount(file, line, *n) for (file, line), n in sorted(lines.items())),
         notes=tuple(dict.fromkeys(notes)),
+        ledger=None if taken is None else tuple(NativeCount(*row) for row in taken[0]),
+        not_charged=() if taken is None else tuple(Uncharged(*row) for row in taken[1]),
     )

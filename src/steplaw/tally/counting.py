@@ -12,8 +12,10 @@ from steplaw.tally.model import Tally
 from steplaw.tally.registry import Registry
 from steplaw.tally.snapshot import CodeCounts, Snapshot, counts_between
 from steplaw.tally.waiting import Waiting
+from steplaw.toll.ledger import LEDGER, Taken
 
 _REGISTRY = Registry()
+_WATCHED = Registry(watched=True)
 
 
 class Counter:
@@ -30,13 +32,14 @@ class Counter:
     def __init__(self) -> None:
         self.codes: list[CodeCounts] = []
         self.notes: list[str] = []
+        self.taken: Taken | None = None
         self._tally: Tally | None = None
 
     @property
     def tally(self) -> Tally:
         """The tally of the stretch."""
         if self._tally is None:
-            self._tally = tally_of(self.codes, self.notes)
+            self._tally = tally_of(self.codes, self.notes, self.taken)
         return self._tally
 
     @property
@@ -73,16 +76,23 @@ class counting:
 
     Functions that run are counted, not the frame that holds the ``with`` block itself: its code
     was under way before.
+
+    Parameters
+    ----------
+    ledger : bool
+        Whether the element visits made in C are charged as well.
     """
 
-    def __init__(self) -> None:
-        self._installation = Installation(_REGISTRY)
+    def __init__(self, ledger: bool = False) -> None:
+        self._registry = _WATCHED if ledger else _REGISTRY
+        self._installation = Installation(self._registry)
 
     def __enter__(self) -> Counter:
         self._counter = Counter()
         self._installation.enter()
-        self._waiting = Waiting(_REGISTRY)
-        self._before = Snapshot(_REGISTRY)
+        self._waiting = Waiting(self._registry)
+        LEDGER.take()
+        self._before = Snapshot(self._registry)
         return self._counter
 
     def __exit__(
@@ -91,7 +101,9 @@ class counting:
         value: BaseException | None,
         trace: TracebackType | None,
     ) -> None:
-        after = Snapshot(_REGISTRY)
+        if self._registry.watched:
+            self._counter.taken = LEDGER.take()
+        after = Snapshot(self._registry)
         self._installation.leave()
         self._counter.notes = [
             *self._before.unsettled,
@@ -121,6 +133,6 @@ def count(function: Callable[..., Any], /, *args: Any, **kwargs: Any) -> Tally:
     BaseException
         What the call raises.
     """
-    with counting() as counter:
+    with counting(ledger=True) as counter:
         function(*args, **kwargs)
     return counter.tally

@@ -9,15 +9,12 @@ from __future__ import annotations
 import builtins
 import gc
 import sys
-from collections.abc import Callable
 from types import CodeType, FunctionType
-from typing import Any, ParamSpec, TypeVar
+from typing import Any
 
-from steplaw.flow import isa
 from steplaw.tally.registry import Registry
+from steplaw.toll.hidden import hidden
 
-P = ParamSpec("P")
-R = TypeVar("R")
 _COMPILER_FLAGS = 0x1FE0000  # CO_FUTURE_*: what exec and eval take over from their caller
 _OWN = "steplaw"
 _real_exec = builtins.exec
@@ -63,22 +60,6 @@ def _functions() -> list[FunctionType]:
 def _is_own(function: FunctionType) -> bool:
     name = function.__globals__.get("__name__")
     return type(name) is str and (name == _OWN or name.startswith("steplaw."))
-
-
-def hidden(function: Callable[P, R]) -> Callable[P, R]:
-    """Make a function whose frames do not show in tracebacks or in `sys._getframe`.
-
-    The interpreter takes a frame that has not reached RESUME for one that is still being set up,
-    and leaves it out; without RESUME, that is the whole of it.
-    """
-    assert isinstance(function, FunctionType)
-    code = function.__code__
-    raw = bytearray(code.co_code)
-    for i in range(0, len(raw), 2):
-        if raw[i] == isa.RESUME:
-            raw[i], raw[i + 1] = isa.OPMAP["NOP"], 0
-    function.__code__ = code.replace(co_code=bytes(raw))
-    return function
 
 
 def _make_exec(registry: Registry) -> Any:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import asdict, dataclass
 from typing import Any
 
 
@@ -53,6 +53,59 @@ class LineCount:
 
 
 @dataclass(frozen=True, slots=True)
+class NativeCount:
+    """Element visits made in C by one kind of operation on one line.
+
+    Parameters
+    ----------
+    file : str
+        Source file.
+    line : int
+        Line number.
+    operation : str
+        What was done.
+    times : int
+        How often.
+    visits : int
+        Element visits; at most so many where they are not exact.
+    exact : bool
+        Whether they are exact.
+    """
+
+    file: str
+    line: int
+    operation: str
+    times: int
+    visits: int
+    exact: bool
+
+
+@dataclass(frozen=True, slots=True)
+class Uncharged:
+    """Calls of one C function without a rule on one line.
+
+    Parameters
+    ----------
+    file : str
+        Source file.
+    line : int
+        Line number.
+    operation : str
+        What was called.
+    times : int
+        How often.
+    largest : int
+        Length of the longest operand.
+    """
+
+    file: str
+    line: int
+    operation: str
+    times: int
+    largest: int
+
+
+@dataclass(frozen=True, slots=True)
 class Tally:
     """The exact counts of one run.
 
@@ -71,6 +124,10 @@ class Tally:
     notes : tuple of str
         What keeps the counts from being exact; empty but for threads and generators that were
         under way when counting began or ended.
+    ledger : tuple of NativeCount, or None
+        Element visits made in C; None where operands were not looked at.
+    not_charged : tuple of Uncharged
+        C calls that no rule is known for.
     """
 
     steps: int
@@ -79,6 +136,13 @@ class Tally:
     functions: tuple[FunctionCount, ...] = ()
     lines: tuple[LineCount, ...] = ()
     notes: tuple[str, ...] = ()
+    ledger: tuple[NativeCount, ...] | None = None
+    not_charged: tuple[Uncharged, ...] = ()
+
+    @property
+    def native(self) -> int | None:
+        """All element visits made in C, None where operands were not looked at."""
+        return None if self.ledger is None else sum(x.visits for x in self.ledger)
 
     def as_json(self) -> dict[str, Any]:
         """Give the tally as plain JSON values."""
@@ -95,6 +159,15 @@ class Tally:
                 for x in self.lines
             ],
             **({"notes": list(self.notes)} if self.notes else {}),
+            **self._native_json(),
+        }
+
+    def _native_json(self) -> dict[str, Any]:
+        if self.ledger is None:
+            return {}
+        return {
+            "ledger": [asdict(x) for x in self.ledger],
+            "not_charged": [asdict(x) for x in self.not_charged],
         }
 
     @classmethod
@@ -107,4 +180,6 @@ class Tally:
             functions=tuple(FunctionCount(**f) for f in data["functions"]),
             lines=tuple(LineCount(**x) for x in data["lines"]),
             notes=tuple(data.get("notes", ())),
+            ledger=tuple(NativeCount(**x) for x in data["ledger"]) if "ledger" in data else None,
+            not_charged=tuple(Uncharged(**x) for x in data.get("not_charged", ())),
         )

@@ -13,6 +13,11 @@ _Key = tuple[str, str, CodeType]
 class Registry:
     """Code objects and their probed forms.
 
+    Parameters
+    ----------
+    watched : bool
+        Whether operands are looked at as well, for the native ledger.
+
     Attributes
     ----------
     probed : list of Probed
@@ -21,7 +26,8 @@ class Registry:
         Code objects left as they are, with the reason.
     """
 
-    def __init__(self) -> None:
+    def __init__(self, watched: bool = False) -> None:
+        self.watched = watched
         self.probed: list[Probed] = []
         self.refused: dict[CodeType, str] = {}
         self._by_original: dict[_Key, CodeType] = {}
@@ -48,7 +54,7 @@ class Registry:
             return known
         consts = tuple([self.rewrite(c) if isinstance(c, CodeType) else c for c in code.co_consts])
         try:
-            probed = Probed(code, consts)
+            probed = Probed(code, consts, self.watched)
         except Unplaceable as reason:
             self.refused[code] = str(reason)
             self._by_original[key] = code

@@ -65,7 +65,9 @@ class Probed:
         "trips",
     )
 
-    def __init__(self, original: CodeType, consts: tuple[object, ...]) -> None:
+    def __init__(
+        self, original: CodeType, consts: tuple[object, ...], watched: bool = False
+    ) -> None:
         self.original = original
         self.graph = graph = Blocks(Decoded(original))
         loops = {loop.edge: loop for loop in range_loops(graph)}
@@ -77,14 +79,14 @@ class Probed:
         self.trips = {place: Trips() for place, number in enumerate(probed) if number in loops}
         probes = dict(zip(probed, self.iterators, strict=True))
         counted = [(loops[probed[place]], trips) for place, trips in self.trips.items()]
-        writer = Writer(graph, consts, probes, counted, self.left)
+        writer = Writer(graph, consts, probes, counted, self.left, watched)
         assembly = writer.write()
         self.origins = assembly.origin_by_unit()
         self.code = original.replace(
             co_code=assembly.code_bytes(),
             co_consts=tuple(writer.consts),
             co_names=tuple(writer.names),
-            co_stacksize=original.co_stacksize + _EXTRA_STACK,
+            co_stacksize=original.co_stacksize + _extra_stack(writer),
             co_linetable=assembly.location_bytes(original, graph.decoded.starts),
             co_exceptiontable=assembly.exception_bytes(),
         )
@@ -99,6 +101,11 @@ class Probed:
     def probe_passes(self, passes: list[int]) -> int:
         """Give how many of these passes went through a probe."""
         return sum(n for place, n in enumerate(passes) if place not in self.trips)
+
+
+def _extra_stack(writer: Writer) -> int:
+    deepest = 0 if writer.watching is None else writer.watching.deepest
+    return max(_EXTRA_STACK, deepest)
 
 
 def _stays(graph: Blocks, edge: Edge, start: int) -> bool:

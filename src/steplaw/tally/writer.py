@@ -19,6 +19,7 @@ from steplaw.tally.assemble import Assembly, Cover
 from steplaw.tally.fused import unsafe_pairs
 from steplaw.tally.placement import Unplaceable
 from steplaw.tally.trips import Trips, TripWriter
+from steplaw.tally.watching import Watching
 
 _LASTI = attrgetter("tb_lasti")
 _TRACEBACK = BaseException.__dict__["__traceback__"].__get__
@@ -53,6 +54,8 @@ class Writer:
         Loops whose trip count takes the place of a probe.
     left : dict
         Where recorders keep the places of fresh exceptions.
+    watched : bool
+        Whether operands are looked at, for the native ledger.
 
     Attributes
     ----------
@@ -69,6 +72,7 @@ class Writer:
         probes: Mapping[int, object],
         counted: Iterable[tuple[RangeLoop, Trips]],
         left: dict[int, int],
+        watched: bool = False,
     ) -> None:
         self.graph = graph
         self.decoded = graph.decoded
@@ -103,6 +107,13 @@ class Writer:
             for op, target in zip(self.decoded.ops, self.decoded.targets, strict=True)
             if op in isa.CHECKED_JUMPS and isa.CHECKS_BEHIND_JUMP
         }
+        self.watching = Watching(self) if watched else None
+
+    @property
+    def range_calls(self) -> set[int]:
+        """The instructions that call `range` for a loop whose passes are known from it."""
+        loops = [writer.loop for writer in self._loops]
+        return {k for loop in loops for k in range(loop.call, loop.iterator)}
 
     def const(self, value: object) -> int:
         """Add a constant and give its number."""
@@ -211,6 +222,8 @@ class Writer:
             self._block(b)
         for label, number, source in self._stubs:
             self._stub(label, number, source)
+        if self.watching is not None:
+            self.watching.late()
         # Outer loops last: what leaves an inner one may go on to the way out of an outer one.
         for writer in sorted(self._loops, key=lambda w: len(w.loop.body)):
             writer.late(self._cover(writer.loop.call))
@@ -248,6 +261,8 @@ class Writer:
                 self._landing(k - 1)
             if k in self._apart:
                 out.emit(_OP["NOP"], cover=cover)
+            if self.watching is not None:
+                self.watching.before(k, cover)
             jump = d.targets[k]
             if jump >= 0:
                 if b in self._stub_of:
@@ -256,8 +271,10 @@ class Writer:
                 else:
                     label = self.graph.of[jump]
                 out.emit(d.ops[k], 0, jump=label, origin=k, cover=cover)
-            else:
+            elif self.watching is None:
                 out.emit(d.ops[k], d.args[k], origin=k, cover=cover)
+            else:
+                self.watching.write(k, cover)
             if k + 1 in self._iterators:
                 self._iterators[k + 1].entered(cover)
         if head > block.last:

@@ -1,0 +1,1 @@
+"""Tolls: the element visits that C code makes inside one instruction."""

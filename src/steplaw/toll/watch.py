@@ -1,0 +1,212 @@
+"""What is called beside an instruction: it looks at operands and charges for them."""
+
+from __future__ import annotations
+
+import operator
+import types
+from typing import Any
+
+from steplaw.toll import arrays, kinds, operands
+from steplaw.toll.hidden import hidden
+from steplaw.toll.ledger import LEDGER, Place
+from steplaw.toll.rules import QUIET, Quiet, call_of, look_up
+
+_PYTHON = frozenset({types.FunctionType, types.MethodType})
+_ITERATED = "sequence.index(x): x not in sequence"
+
+
+@hidden
+def consider(function: Any, args: tuple[Any, ...], place: Place) -> bool:
+    """Tell whether a call is to be made by `charged`; note it if it has no rule."""
+    found = look_up(function, args)
+    if found is None:
+        LEDGER.pass_over(place, _name_of(function), [kinds.size(x) for x in args])
+        return False
+    if isinstance(found, Quiet):
+        if found is QUIET:
+            if not place.name:
+                place.quiet = function
+            elif type(function) in _PYTHON:
+                place.quiet = type(function)
+        return False
+    return True
+
+
+@hidden
+def charged(
+    args: tuple[Any, ...], function: Any, place: Place, names: tuple[str, ...] | None
+) -> Any:
+    """Make a call that has a rule, and charge it."""
+    kwargs: dict[str, Any] = {}
+    if names:
+        kwargs = dict(zip(names, args[-len(names) :], strict=True))
+        args = args[: -len(names)]
+    return _by_rule(function, args, kwargs, place)
+
+
+@hidden
+def consider_spread(function: Any, args: Any, place: Place) -> bool:
+    """Tell whether a call with arguments spread out is to be made by `spread`."""
+    if type(args) is tuple or type(args) is list:
+        return consider(function, tuple(args), place)
+    return False
+
+
+@hidden
+def spread(args: Any, kwargs: dict[str, Any] | None, function: Any, place: Place) -> Any:
+    """Make a call with arguments spread out, and charge it."""
+    return _by_rule(function, tuple(args), kwargs or {}, place)
+
+
+@hidden
+def _by_rule(function: Any, args: tuple[Any, ...], kwargs: dict[str, Any], place: Place) -> Any:
+    found = look_up(function, args)
+    if found is None or isinstance(found, Quiet):
+        return function(*args, **kwargs)
+    call = call_of(found, function, kwargs)
+    rule = found[0]
+    try:
+        return rule.charge(call)
+    finally:
+        LEDGER.charge(place, rule.operation, call.visits, call.exact)
+
+
+def _name_of(function: Any) -> str:
+    kind = type(function)
+    name = function.__name__ if kind in _NAMED or type in kinds.bases(kind) else kind.__name__
+    owner = getattr(function, "__self__", None) if kind is types.BuiltinFunctionType else None
+    if owner is not None and type(owner) is not types.ModuleType:
+        return f"{type(owner).__name__}.{name}"
+    if owner is not None and owner.__name__ != "builtins":
+        return f"{owner.__name__}.{name}"
+    return str(name)
+
+
+_NAMED = {types.BuiltinFunctionType, types.MethodDescriptorType, types.MethodWrapperType}
+
+
+@hidden
+def receive(owner: Any, place: Place) -> None:
+    """Look at what a method is loaded from, whose name has no rule."""
+    if type(owner) is types.ModuleType:
+        value = vars(owner).get(place.name)
+        found = look_up(value, ())
+        if found is None:
+            LEDGER.pass_over(place, f"{owner.__name__}.{place.name}", [])
+            return
+        place.passed()
+        return
+    holder = owner if type in kinds.bases(type(owner)) else type(owner)
+    value = next(
+        (vars(base)[place.name] for base in kinds.bases(holder) if place.name in vars(base)), None
+    )
+    if type(value) is types.MethodDescriptorType:
+        size = arrays.elements(owner)
+        if size:
+            LEDGER.charge(place, "array method", size, False)
+            return
+        if look_up(value, (owner,)) is None:
+            name = f"{holder.__name__}.{place.name}"
+            LEDGER.pass_over(place, name, [kinds.size(owner)])
+            return
+    place.passed()
+
+
+@hidden
+def contains(item: Any, container: Any, place: Place) -> bool:
+    """Look for an item and charge the place where it is found; nothing is compared twice."""
+    kind = type(container)
+    if kind in operands.SCANNED:
+        return _scan(item, container, place)
+    if kind in operands.TEXTS:
+        size = kinds.length(container) or 0
+        LEDGER.charge(place, f"in {kind.__name__}", size, False)
+    elif arrays.elements(container):
+        LEDGER.charge(place, "in array", container.size, False)
+    else:
+        place.quiet = kind
+    found: bool = operator.contains(container, item)
+    return found is bool(place.argument == 0)
+
+
+@hidden
+def _scan(item: Any, container: Any, place: Place) -> bool:
+    kind = type(container)
+    visits, found = kinds.length(container) or 0, False
+    try:
+        # The same comparisons in the same order as `in` makes them (CPython's list_contains and
+        # _PySequence_IterSearch), with the place at the end.
+        visits = operator.indexOf(container, item) + 1
+        found = True
+    except ValueError as error:
+        if error.args != (_ITERATED,):
+            raise
+    finally:
+        LEDGER.charge(place, f"in {kind.__name__}", visits)
+    return found is bool(place.argument == 0)
+
+
+@hidden
+def binary(left: Any, right: Any, place: Place) -> None:
+    """Charge an operator by its operands."""
+    charge = operands.binary(place.argument, left, right)
+    if charge is not None:
+        LEDGER.charge(place, *charge)
+    elif type(left) is not int or not operands.makes_long(place.argument):
+        place.quiet = type(left)
+
+
+@hidden
+def compare(left: Any, right: Any, place: Place) -> None:
+    """Charge a comparison of sequences, at most."""
+    kind = type(left)
+    if kind in kinds.SCALARS:
+        place.quiet = kind
+        return
+    charge = operands.comparison(place.argument, left, right)
+    if charge is not None:
+        LEDGER.charge(place, *charge)
+    elif kinds.length(left) is None and not arrays.elements(left):
+        place.quiet = kind
+
+
+@hidden
+def part(container: Any, start: Any, stop: Any, step: Any, place: Place) -> None:
+    """Charge a slice that is read."""
+    size = kinds.length(container)
+    if size is not None and type(container) is not memoryview and type(container) is not range:
+        visits = operands.slice_length(size, start, stop, step)
+        exact = visits is not None
+        LEDGER.charge(place, "slice", size if visits is None else visits, exact)
+
+
+@hidden
+def put(values: Any, container: Any, start: Any, stop: Any, step: Any, place: Place) -> None:
+    """Charge a slice that is assigned: what is written, and what moves behind it."""
+    charge = operands.slice_written(values, container, start, stop, step)
+    if charge is not None:
+        LEDGER.charge(place, "slice assigned", *charge)
+
+
+@hidden
+def delete(container: Any, key: Any, place: Place) -> None:
+    """Charge what moves up behind a deleted item or slice."""
+    charge = operands.deleted(container, key)
+    if charge is not None:
+        LEDGER.charge(place, "deleted", *charge)
+    elif kinds.length(container) is None or type(container) is dict:
+        place.quiet = type(container)
+
+
+@hidden
+def items(value: Any, place: Place) -> None:
+    """Charge the items of an operand that is spread out, added or copied."""
+    size = kinds.length(value)
+    if size:
+        LEDGER.charge(place, place.name, size)
+
+
+@hidden
+def texts(values: tuple[Any, ...], place: Place) -> None:
+    """Charge the parts of an f-string."""
+    LEDGER.charge(place, "f-string", sum([len(x) for x in values]))
