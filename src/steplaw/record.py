@@ -187,9 +187,9 @@ class AuditRecord(Record):
 
     def _repr_html_(self) -> str:
         # A notebook asks the record for its page: the one place that looks up at a face.
-        from steplaw.faces.page import page
+        from steplaw.faces.page import frame
 
-        return page(self, whole=False)
+        return frame(self)
 
 
 class TallyRecord(Record):

@@ -74,6 +74,33 @@ def terms(formula: object, unicode: bool = True) -> list[str]:
     return out
 
 
+def signed_terms(formula: object) -> list[str]:
+    """Split a formula into its terms, each a formula by itself, in the order of `terms`.
+
+    Parameters
+    ----------
+    formula : str or None
+        A formula that `sympy.sympify` reads.
+
+    Returns
+    -------
+    list of str
+        Such as ``['n**3/6', '-(n**2/2)']``; nothing where the formula cannot be read.
+    """
+    tree = None if formula is None else _parsed(formula)
+    if tree is None:
+        return []
+    try:
+        return [_signed(negative, node) for negative, node in _summands(tree)]
+    except RecursionError:
+        return []
+
+
+def _signed(negative: bool, node: ast.expr) -> str:
+    # The sign that _summands gives counts the minus signs inside the product as well.
+    return ast.unparse(node) if not negative ^ _is_negative(node) else f"-({ast.unparse(node)})"
+
+
 def _parsed(formula: object) -> ast.expr | None:
     text = str(formula)
     if len(text) > LONGEST:

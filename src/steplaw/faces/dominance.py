@@ -1,0 +1,158 @@
+"""Which term and which line dominates at which size, read off the laws of the record."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass
+from typing import Any
+
+from steplaw.faces import along as ways
+from steplaw.faces.along import Along, Number
+from steplaw.faces.notation import signed_terms, terms
+
+Json = Mapping[str, Any]
+#: How far beyond the largest size run the shares are read, as a factor.
+BEYOND = 100
+LEAST_REACH = 1000
+
+
+@dataclass(frozen=True, slots=True)
+class Part:
+    """A term or a line: what it is called and its value at a size."""
+
+    label: str
+    read: Callable[[Mapping[str, int]], Number]
+
+
+@dataclass(frozen=True, slots=True)
+class Shares:
+    """Shares of parts by size.
+
+    Parameters
+    ----------
+    along : Along
+        The size that grows.
+    labels : tuple of str
+        The parts, in the record's order.
+    sizes : tuple of int
+        Sizes looked at.
+    rows : tuple of tuple of float
+        By part: its share at each size; magnitudes, where a part is negative.
+    bands : tuple of (int, int)
+        First size of each band, and the part with the greatest share in it.
+    """
+
+    along: Along
+    labels: tuple[str, ...]
+    sizes: tuple[int, ...]
+    rows: tuple[tuple[float, ...], ...]
+    bands: tuple[tuple[int, int], ...]
+
+
+def term_shares(record: Json, along: Along) -> Shares | None:
+    """Give the shares of the terms of the figure's law.
+
+    Parameters
+    ----------
+    record : mapping
+        A `steplaw.audit/1` record.
+    along : Along
+        The size that grows.
+
+    Returns
+    -------
+    Shares or None
+        None where no law is claimed, or it has one term alone.
+    """
+    law = record["figure"]["law"]
+    names = along.names
+    formula = law.get("formula")
+    labels = [label.removeprefix("+ ") for label in terms(formula)]
+    made = [ways.formula_reader(text, names) for text in signed_terms(formula)]
+    if len(made) != len(labels) or len(made) < 2:
+        return None
+    parts = [Part(label, read) for label, read in zip(labels, made, strict=True) if read]
+    return _shares(parts, along, ways.starts_at(law, along)) if len(parts) == len(made) else None
+
+
+def line_shares(record: Json, along: Along) -> tuple[Shares | None, list[int]]:
+    """Give the shares of the lines, and the lines that have no law and are left out.
+
+    Parameters
+    ----------
+    record : mapping
+        A `steplaw.audit/1` record.
+    along : Along
+        The size that grows.
+
+    Returns
+    -------
+    Shares or None, list of int
+        None where fewer than two lines have a law.
+    """
+    names = along.names
+    parts, left_out, start = [], [], 0
+    for line in record.get("lines") or []:
+        read = ways.reader(line.get("steps"), names)
+        if read is None:
+            left_out.append(int(line["line"]))
+        else:
+            parts.append(Part(f"line {line['line']}", read))
+            start = max(start, ways.starts_at(line["steps"], along))
+    return (_shares(parts, along, start) if len(parts) > 1 else None), left_out
+
+
+def _shares(parts: Sequence[Part], along: Along, start: int) -> Shares | None:
+    low = max(1, start)
+    most = max(low, along.run[-1] if along.run else low)
+    kept: list[int] = []
+    columns: list[list[float]] = []
+    for size in ways.stops(low, max(most * BEYOND, LEAST_REACH)):
+        column = _column(parts, along, size)
+        if column is None and kept:
+            break
+        if column is not None:
+            kept.append(size)
+            columns.append(column)
+    if len(kept) < 2:
+        return None
+    rows = tuple(zip(*columns, strict=True))
+    labels = tuple(part.label for part in parts)
+    return Shares(along, labels, tuple(kept), rows, _bands(parts, along, kept, columns))
+
+
+def _column(parts: Sequence[Part], along: Along, size: int) -> list[float] | None:
+    values = [part.read(along.at(size)) for part in parts]
+    if not all(ways.finite(value) for value in values):
+        return None
+    sizes = [value if value > 0 else -value for value in values]
+    total = sum(sizes)
+    return [float(size / total) for size in sizes] if total else None
+
+
+def _bands(
+    parts: Sequence[Part], along: Along, sizes: Sequence[int], columns: Sequence[Sequence[float]]
+) -> tuple[tuple[int, int], ...]:
+    tops = [_top(column) for column in columns]
+    out = [(sizes[0], tops[0])]
+    for place in range(1, len(sizes)):
+        if tops[place] != tops[place - 1]:
+            out.append((_turn(parts, along, sizes[place - 1], sizes[place]), tops[place]))
+    return tuple(out)
+
+
+def _turn(parts: Sequence[Part], along: Along, low: int, high: int) -> int:
+    """Find the first size from which the part that leads at `high` leads."""
+    last = _column(parts, along, high)
+    while high - low > 1 and last is not None:
+        middle = (low + high) // 2
+        column = _column(parts, along, middle)
+        if column is not None and _top(column) == _top(last):
+            high = middle
+        else:
+            low = middle
+    return high
+
+
+def _top(column: Sequence[float]) -> int:
+    return max(range(len(column)), key=lambda part: column[part])
