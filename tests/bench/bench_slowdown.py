@@ -78,10 +78,10 @@ def child(way: str, name: str, scale: str) -> None:
     def say(*words: object) -> None:
         print(*words, file=out, flush=True)
 
-    if way == "probes":
+    if way in ("probes", "ledger"):
         from steplaw.tally import counting
 
-        with counting() as counter:
+        with counting(ledger=way == "ledger") as counter:
             call()
             rounds = _serve(call, times, say) + 1
         say(counter.probe_passes // rounds, counter.blocks_run // rounds, counter.tally.steps)
@@ -119,18 +119,20 @@ def _serve(call: Callable[[], Any], times: int, say: Callable[..., None]) -> int
 
 def measure(name: str, rounds: int, events: bool) -> Row:
     """Run one program all ways in turn."""
-    plain, probes = Runner("plain", name, "full"), Runner("probes", name, "full")
-    times: dict[str, list[float]] = {"plain": [], "probes": []}
+    runners = {way: Runner(way, name, "full") for way in ("plain", "probes", "ledger")}
+    times: dict[str, list[float]] = {way: [] for way in runners}
     for turn in range(rounds):
-        order = [("plain", plain), ("probes", probes)]
+        order = list(runners.items())
         for way, runner in order if turn % 2 == 0 else reversed(order):
             times[way].append(runner.round())
-    plain.end()
-    passes, blocks, _ = (int(word) for word in probes.end())
+    runners["plain"].end()
+    runners["ledger"].end()
+    passes, blocks, _ = (int(word) for word in runners["probes"].end())
     row: Row = {
         "name": name,
         "seconds": min(times["plain"]),
         "probes": min(times["probes"]) / min(times["plain"]),
+        "ledger": min(times["ledger"]) / min(times["plain"]),
         "passes": passes,
         "blocks": blocks,
         "events": None,
@@ -157,7 +159,8 @@ def _line(row: Row) -> str:
     events = "" if row["events"] is None else f"{row['events']:.1f}"
     share = row["passes"] / row["blocks"] if row["blocks"] else 0.0
     return (
-        f"| {row['name']} | {row['seconds']:.3f} | {row['probes']:.3f} | {events} "
+        f"| {row['name']} | {row['seconds']:.3f} | {row['probes']:.3f} "
+        f"| {row['ledger']:.3f} | {events} "
         f"| {row['passes']:,} | {row['blocks']:,} | {share:.3f} |"
     )
 
@@ -165,7 +168,9 @@ def _line(row: Row) -> str:
 def _summary(title: str, rows: list[Row]) -> str:
     ratios = [row["probes"] for row in rows]
     events = [row["events"] for row in rows if row["events"]]
+    ledger = [row["ledger"] for row in rows]
     said = f"{title}: geometric mean {mean(ratios):.3f}, worst {max(ratios):.3f}"
+    said += f"; with the native ledger {mean(ledger):.3f}, worst {max(ledger):.3f}"
     if events:
         said += f"; opcode events {mean(events):.1f}"
     passes, blocks = sum(r["passes"] for r in rows), sum(r["blocks"] for r in rows)
@@ -183,8 +188,8 @@ def main() -> None:
     if programs_folder() is None:
         print("pyperformance is not installed: only the loop nests are run\n")
     print(f"CPython {platform.python_version()}, {platform.machine()}, {platform.system()}\n")
-    print("| program | plain s | probes | opcode events | probe passes | blocks run | share |")
-    print("| --- | ---: | ---: | ---: | ---: | ---: | ---: |")
+    print("| program | plain s | probes | with ledger | opcode events | probe passes | blocks run | share |")
+    print("| --- | ---: | ---: | ---: | ---: | ---: | ---: | ---: |")
     groups: dict[str, list[Row]] = {}
     for workload in chosen:
         row = measure(workload.name, given.rounds, not given.no_events)
