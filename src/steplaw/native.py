@@ -10,6 +10,7 @@ from typing import Any
 
 from steplaw import series
 from steplaw.host.asking import Run
+from steplaw.law import order
 from steplaw.law.model import Law, Observation
 from steplaw.sweep import Sweep
 
@@ -89,9 +90,17 @@ class NativeFindings:
         rows.sort(key=lambda row: (-row["share"], row["file"], row["line"], row["operation"]))
         return {
             "at": self._swept.at(largest),
+            "leads": self._leads(),
             "rows": rows,
             "not_charged": self._not_charged(),
         }
+
+    def _leads(self) -> bool:
+        """Tell whether native visits have the leading term of the whole, as their laws say."""
+        native = self._find(series.of(self._swept, lambda run: run.tally.native or 0), False)
+        steps = self._find(series.of(self._swept, lambda run: run.tally.steps), False)
+        known = native.formula is not None and steps.formula is not None
+        return known and native.formula != "0" and order(native) > order(steps)
 
     def _row(self, key: Key, visits: Sequence[Observation], share: float) -> dict[str, Any]:
         file, line, operation = key

@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+import math
+from collections.abc import Mapping, Sequence
+from fractions import Fraction
 from typing import Any
 
 from steplaw import series
 from steplaw.clock import Timing, check
+from steplaw.costs import work
 from steplaw.errors import SteplawError
 from steplaw.host.asking import Asker, RunFailed
 from steplaw.law.model import Observation
@@ -14,6 +17,8 @@ from steplaw.sweep import Sweep
 
 SECONDS = 6.0
 SIZES_MOST = 16
+RATES = tuple(Fraction(2) ** power for power in range(2, -10, -1))
+"""Steps that one native visit may take."""
 
 
 def points_to_time(swept: Sweep) -> list[Observation]:
@@ -27,12 +32,13 @@ def points_to_time(swept: Sweep) -> list[Observation]:
     Returns
     -------
     list of Observation
-        Smallest first; the steps grow by a quarter or more from one to the next. Empty where
+        Smallest first; steps and native visits together grow by a quarter or more from one to
+        the next. Empty where
         every input of a size was run: there is no one input to time.
     """
     if swept.whole:
         return []
-    steps = series.of(swept, lambda run: run.tally.steps)
+    steps = series.of(swept, lambda run: work(run.tally))
     chosen: list[Observation] = []
     for o in sorted(steps, key=lambda o: (o.value, o.at), reverse=True):
         if all(o.at) and o.value > 0 and (not chosen or o.value * 5 <= chosen[-1].value * 4):
@@ -68,7 +74,51 @@ def hold_against_clock(
         return undecided(f"the timed run {failed.failure.message}")
     except SteplawError as error:
         return undecided(f"the timed run could not be made: {error}")
-    return check(points, [o.value for o in chosen], [Timing.from_json(row) for row in rows])
+    timings = [Timing.from_json(row) for row in rows]
+    by_size = {o.at: o.value for o in series.of(swept, lambda run: run.tally.steps)}
+    steps = [by_size[o.at] for o in chosen]
+    visits = [o.value - own for o, own in zip(chosen, steps, strict=True)]
+    alone = check(points, steps, timings)
+    if 10 * visits[-1] < steps[-1]:
+        # Too few to tell in the time, and a rate fitted to them would be one for something else.
+        return {**alone, "held": "steps", "visit_rate": None, "steps_alone": None}
+    rate = _rate_of_visits(steps, visits, points, timings)
+    whole = [own + rate * more for own, more in zip(steps, visits, strict=True)]
+    return {
+        **check(points, whole, timings, "steps and native visits"),
+        "held": "work",
+        "visit_rate": str(rate),
+        "steps_alone": {
+            key: alone[key] for key in ("agrees", "reason", "departs_from", "exponent_steps")
+        },
+    }
+
+
+def _rate_of_visits(
+    steps: Sequence[Fraction],
+    visits: Sequence[Fraction],
+    points: Sequence[Mapping[str, int]],
+    timings: Sequence[Timing],
+) -> Fraction:
+    """Give how much of a step a visit takes, the power of two that fits the timings best.
+
+    A visit by C code is mostly far quicker than a step, so that their sum as it stands would hide
+    the steps; with one rate for all sizes the growth of neither can hide.
+    """
+    times = {tuple(t.at.values()): t.best_ns for t in timings}
+    rows = [
+        (float(own), float(more), times[key])
+        for own, more, at in zip(steps, visits, points, strict=True)
+        for key in [tuple(at.values())]
+        if times.get(key, 0) > 0
+    ]
+
+    def spread(rate: Fraction) -> float:
+        logs = [math.log(t / (own + float(rate) * more)) for own, more, t in rows]
+        mean = sum(logs) / len(logs)
+        return sum((x - mean) ** 2 for x in logs)
+
+    return min(RATES, key=spread) if rows else Fraction(1)
 
 
 def undecided(reason: str) -> dict[str, Any]:

@@ -188,7 +188,8 @@ def main() -> None:
     if programs_folder() is None:
         print("pyperformance is not installed: only the loop nests are run\n")
     print(f"CPython {platform.python_version()}, {platform.machine()}, {platform.system()}\n")
-    print("| program | plain s | probes | with ledger | opcode events | probe passes | blocks run | share |")
+    heads = ("program", "plain s", "probes", "with ledger", "opcode events", "probe passes")
+    print(f"| {' | '.join(heads)} | blocks run | share |")
     print("| --- | ---: | ---: | ---: | ---: | ---: | ---: | ---: |")
     groups: dict[str, list[Row]] = {}
     for workload in chosen:

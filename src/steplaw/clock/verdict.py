@@ -26,7 +26,10 @@ RISE_UNSEEN = 2.5
 
 
 def check(
-    points: Sequence[Size], steps: Sequence[int | Fraction], timings: Sequence[Timing]
+    points: Sequence[Size],
+    steps: Sequence[int | Fraction],
+    timings: Sequence[Timing],
+    unit: str = "steps",
 ) -> dict[str, Any]:
     """Hold the steps against the clock.
 
@@ -47,6 +50,8 @@ def check(
         Steps, or their mean over the draws, at each of these.
     timings : sequence of Timing
         Timings at some of these sizes.
+    unit : str
+        What the steps are called, where native visits are among them.
 
     Returns
     -------
@@ -63,7 +68,7 @@ def check(
         for t, s in rows
         if _extent(t.at) > 0 and s > 0 and t.best_ns >= SHORTEST_NS and len(t.samples) > 0
     ]
-    verdict = _judge(usable, len(rows))
+    verdict = _judge(usable, len(rows), unit)
     return {
         **verdict,
         "sizes": [dict(t.at) for t, _ in rows],
@@ -104,7 +109,7 @@ class _Break:
         return rise > limit or (self.kind == "slope" and slope > SLOPE_ALLOWED and rise > limit / 2)
 
 
-def _judge(rows: list[Row], listed: int) -> dict[str, Any]:
+def _judge(rows: list[Row], listed: int, unit: str) -> dict[str, Any]:
     def say(agrees: bool | None, reason: str, at: Size | None = None) -> dict[str, Any]:
         return {"agrees": agrees, "reason": reason, "departs_from": dict(at) if at else None}
 
@@ -113,18 +118,18 @@ def _judge(rows: list[Row], listed: int) -> dict[str, Any]:
         return say(None, f"too few sizes to judge: {len(rows)}, {SIZES_LEAST} needed{short}")
     if _extent(rows[-1][0].at) < 4 * _extent(rows[0][0].at):
         return say(None, "the sizes timed are too close together to judge: less than 4 times apart")
-    growth = _growth(rows)
+    growth = _growth(rows, unit)
     course = _course(rows)
     for best in (course.whole, course.upper):
         if best.departs:
             pace = "faster" if best.rise > 0 else "more slowly"
             at = rows[best.place][0].at
-            reason = f"from {_name(at)} on, time grows {pace} than the steps: {growth}"
+            reason = f"from {_name(at)} on, time grows {pace} than the {unit}: {growth}"
             return say(False, reason, at)
     unseen = abs(course.whole.rise) + 2 * course.whole.rise_error > math.log2(RISE_UNSEEN)
     if unseen or course.ends_apart:
         return say(None, f"the timings are too noisy to judge: {growth}")
-    return say(True, f"time follows the steps: {growth}{_drift(rows, course)}")
+    return say(True, f"time follows the {unit}: {growth}{_drift(rows, course)}")
 
 
 def _drift(rows: list[Row], course: _Course) -> str:
@@ -137,11 +142,11 @@ def _drift(rows: list[Row], course: _Course) -> str:
     return f"; ns per step {word} from {first:.3g} to {last:.3g}"
 
 
-def _growth(rows: list[Row]) -> str:
+def _growth(rows: list[Row], unit: str) -> str:
     names = list(rows[0][0].at)
     size = names[0] if len(names) == 1 else "size"
     of_steps, of_time = _top_exponent(rows, 1), _top_exponent(rows, 0)
-    return f"steps grow as {size}^{of_steps:.2f}, time as {size}^{of_time:.2f}"
+    return f"{unit} grow as {size}^{of_steps:.2f}, time as {size}^{of_time:.2f}"
 
 
 @dataclass(frozen=True, slots=True)

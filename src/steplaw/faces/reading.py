@@ -118,15 +118,20 @@ def verdict(record: Json, unicode: bool = True) -> list[str]:
     else:
         same = law.get("formula") == leading and law["grade"] in ("exact", "proved")
         out = [f"{name} {'=' if same else '~'} {pretty(leading, unicode)} ({law['grade']})"]
+    leads = native_leads(record, unicode)
+    if leads is not None:
+        out.append(leads)
     line = next((x for x in record.get("lines") or [] if x.get("dominant")), None)
     if line is not None and line.get("share") is not None:
         out.append(f"line {line['line']} carries {percent(line['share'])}")
     clock = record.get("clock")
     if clock is not None:
         out.append(
-            {True: "time follows the steps", False: "TIME DEPARTS FROM THE STEPS"}.get(
-                clock["agrees"], "the clock cannot tell"
-            )
+            {
+                True: "time follows the " + ("whole" if clock.get("held") == "work" else "steps"),
+                False: "TIME DEPARTS FROM THE "
+                + ("WHOLE" if clock.get("held") == "work" else "STEPS"),
+            }.get(clock["agrees"], "the clock cannot tell")
         )
     repeatable = record.get("repeatable")
     if repeatable and not repeatable["holds"]:
@@ -180,11 +185,28 @@ def named_laws(record: Json) -> list[tuple[str, Json]]:
         ("least", figure.get("least")),
         ("most", figure.get("most")),
         ("variance", figure.get("variance")),
-        ("native", laws.get("native")),
+        *whole_laws(record),
     ]
     if figure["name"] != "steps":
         found.insert(0, ("all steps", laws.get("steps")))
     return [(name, law) for name, law in found if law]
+
+
+def whole_laws(record: Json) -> list[tuple[str, Json | None]]:
+    """Give the laws of native visits and of the whole, none where nothing was charged."""
+    laws = record["laws"]
+    native = laws.get("native")
+    if not native or native.get("formula") == "0":
+        return []
+    return [("native", native), ("work", laws.get("work"))]
+
+
+def native_leads(record: Json, unicode: bool = True) -> str | None:
+    """Say that native visits have the leading term of the whole, None where they do not."""
+    ledger, native = record.get("ledger") or {}, record["laws"].get("native") or {}
+    if not ledger.get("leads") or not native.get("leading"):
+        return None
+    return f"NATIVE VISITS LEAD, ~ {pretty(native['leading'], unicode)} ({native['grade']})"
 
 
 def value_rows(record: Json) -> list[tuple[str, str, str, str, str]]:
@@ -278,10 +300,10 @@ def hidden_cost(record: Json) -> str | None:
     clock = record.get("clock")
     if not clock or clock.get("agrees") is not False:
         return None
-    if (record["laws"].get("native") or {}).get("formula"):
+    if (record.get("ledger") or {}).get("rows"):
         return (
-            "Steps leave out the work done inside C code; the law of native visits above "
-            "tells how much of it there is."
+            "Native visits are among what was held against the clock. What is left is work that "
+            "the ledger does not charge, named there, or the cost of memory."
         )
     return (
         "Steps leave out the work done inside C code, such as a scan of a list with `in`, a slice "

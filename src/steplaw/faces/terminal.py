@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING, Any
 from steplaw.faces import reading
 from steplaw.faces.notation import pretty, terms
 from steplaw.faces.sheet import ACCENT, BAD, GOOD, HEAD, QUIET, UNSURE, Sheet
+from steplaw.faces.terminal_native import show_ledger
 from steplaw.faces.text import grouped, percent, size
 
 if TYPE_CHECKING:
@@ -42,6 +43,7 @@ def show(record: Json, console: Console) -> None:
     _lines(sheet, record)
     _functions(sheet, record)
     _operations(sheet, record)
+    show_ledger(sheet, record)
     _clock(sheet, record)
     _foot(sheet, record)
 
@@ -267,7 +269,10 @@ def _clock(sheet: Sheet, record: Json) -> None:
     sheet.say(clock["reason"], style)
     rows = reading.clock_rows(record, sheet.unicode)
     names = ", ".join(sheet.clean(name) for name in reading.size_names(record)) or "size"
+    of_whole = clock.get("held") == "work"
     heads = [names, "steps", "time", "ns a step", "steps grow", "time grows"]
+    if of_whole:
+        heads = [names, "whole", "time", "ns each", "whole grows", "time grows"]
     if rows:
         sheet.grid([(head, "right") for head in heads], rows[-CLOCK_MOST:])
         if len(rows) > CLOCK_MOST:
@@ -275,6 +280,10 @@ def _clock(sheet: Sheet, record: Json) -> None:
         between = clock.get("ns_per_step_interval")
         rate_text = f"{between[0]:.3g} to {between[1]:.3g} ns a step; " if between else ""
         sheet.say(f"{rate_text}best of {clock['rounds']} rounds on {clock['machine']}", QUIET)
+    alone = clock.get("steps_alone")
+    if alone:
+        sheet.say(f"Steps alone: {alone['reason']}", QUIET if clock["agrees"] else "")
+        sheet.say(f"One native visit taken as {clock['visit_rate']} of a step.", QUIET)
     hidden = reading.hidden_cost(record)
     if hidden:
         sheet.say(hidden)
