@@ -389,7 +389,7 @@ class TestRefusals:
             ("jsn:loads", "did you mean json"),
             ("json.decodr:x", "did you mean json.decoder"),
             ("textwrap.wrap:x", "a function of it is written textwrap:wrap"),
-            ("zzqx_of_tests:x", "a file is written path/to/file.py:name"),
+            ("zzqx_of_the_office:x", "a file is written path/to/file.py:name"),
         ],
     )
     def test_no_such_module(self, text: str, offer: str) -> None:

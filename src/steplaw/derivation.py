@@ -69,7 +69,7 @@ def derive(subject: str) -> DeriveRecord:
     The source file is read and compiled; neither it nor any module is imported.
     """
     source = find(subject)
-    module = _compiled(source)
+    module = compiled(source)
     name = source.ref.name
     code = module.find(name)
     if code is None or module.node(name) is None:
@@ -124,7 +124,14 @@ def _file_of_module(name: str) -> Path:
     return Path(spec.origin)
 
 
-def _compiled(source: Source) -> Module:
+def compiled(source: Source) -> Module:
+    """Compile a source file, running nothing of it.
+
+    Raises
+    ------
+    CallError
+        If it is no valid Python here.
+    """
     from steplaw.flow.module import Module
 
     try:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import linecache
 from collections.abc import Callable, Mapping, Sequence
+from dataclasses import replace
 from fractions import Fraction
 from typing import Any
 
@@ -11,10 +12,11 @@ from steplaw import costs, series
 from steplaw.costs import Costs
 from steplaw.errors import CallError
 from steplaw.host.asking import Run
-from steplaw.law import find_law, order
+from steplaw.law import find_law, leading_term, order
 from steplaw.law.model import Law, Observation
 from steplaw.native import NativeFindings
 from steplaw.repeat import Repeat
+from steplaw.structure import Forms
 from steplaw.sweep import Sweep
 
 #: Lines outside the subject's file are listed from this share of the steps on.
@@ -36,6 +38,8 @@ class Findings:
         What differed between equal runs: no law is claimed for that.
     own : Costs, optional
         The team's own weights, which the figure `cost` is made from.
+    forms : Forms, optional
+        The forms that the structure of the code fixes; without, nothing is proved.
     """
 
     def __init__(
@@ -45,15 +49,17 @@ class Findings:
         loaded: Mapping[str, Any],
         repeat: Repeat | None,
         own: Costs | None = None,
+        forms: Forms | None = None,
     ) -> None:
         self.costs = own if figure == "cost" else None
         self.sweep = sweep
         self.name = figure
+        self.forms = forms
         self.loaded = loaded
         self.changed = repeat.changed if repeat is not None else set()
         self.unsteady = repeat is not None and not repeat.holds
         self._orders: tuple[Any, ...] | None = None
-        self._known: dict[tuple[Observation, ...], Law] = {}
+        self._known: dict[tuple[Any, ...], Law] = {}
         self._lines = series.of_many(sweep, _line_values)
         self._functions = series.of_many(sweep, _function_values)
         self._check_line()
@@ -62,17 +68,28 @@ class Findings:
         self.native = NativeFindings(sweep, self._law, loaded["file"], self.unsteady)
         self.figure_law = self._figure_law()
 
-    def _law(self, observations: Sequence[Observation], changed: bool = False) -> Law:
+    def _law(
+        self,
+        observations: Sequence[Observation],
+        changed: bool = False,
+        form: tuple[object, ...] = (),
+    ) -> Law:
+        """Find a law; `form` names the figure to `Forms`, if the structure may prove it."""
         if changed:
             return Law(None, None, "open", note="the count changes between equal runs")
         if not observations:
             return Law(None, None, "open", note="nothing was run to its end")
-        key = tuple(observations)
+        shape, why_not = None, ""
+        if form and self.forms is not None:
+            shape, why_not = self.forms.shape(*form)
+        key = (*observations, shape)
         law = self._known.get(key)
         if law is None:
-            law = self._known[key] = find_law(
-                observations, self.sweep.names, orders=self._exact_orders()
-            )
+            orders = self._exact_orders()
+            law = find_law(observations, self.sweep.names, shape=shape, orders=orders)
+            self._known[key] = law
+        if why_not and law.grade == "exact":
+            law = replace(law, note="; ".join(x for x in (law.note, f"not proved: {why_not}") if x))
         return law
 
     def _exact_orders(self) -> tuple[Any, ...]:
@@ -113,9 +130,17 @@ class Findings:
         changed = self.unsteady
         if self.name.startswith("line:"):
             changed = (self.loaded["file"], int(self.name[5:])) in self.changed
-        law = self._law(series.of(self.sweep, self._read()), changed)
+        law = self._law(series.of(self.sweep, self._read()), changed, self._form())
         whole = self.name in ("native", "work", "elements") or self.name == "cost"
         return self.native.bounded(law) if whole else law
+
+    def _form(self) -> tuple[object, ...]:
+        """Name the study's figure as `Forms` knows it."""
+        if self.name == "steps":
+            return ("steps",)
+        if self.name.startswith("line:"):
+            return self.loaded["file"], int(self.name[5:]), "frequency"
+        return "operation", self.name
 
     def figure(self) -> dict[str, Any]:
         """Give the record's ``figure``."""
@@ -124,9 +149,12 @@ class Findings:
         fixed = all(o.variance == 0 for o in observations)
         by_law: dict[str, Any] = {"least": None, "most": None, "variance": None}
         if (self.sweep.whole or fixed) and observations and not self.unsteady:
+            form = self._form() if fixed else ()
+            least = _single(observations, lambda o: Fraction(o.least))
+            most = _single(observations, lambda o: Fraction(o.most))
             by_law = {
-                "least": self._law(_single(observations, lambda o: Fraction(o.least))).as_json(),
-                "most": self._law(_single(observations, lambda o: Fraction(o.most))).as_json(),
+                "least": self._law(least, form=form).as_json(),
+                "most": self._law(most, form=form).as_json(),
                 "variance": self._law(_single(observations, lambda o: o.variance)).as_json(),
             }
         return {
@@ -177,18 +205,41 @@ class Findings:
         exact, data = series.parts(self.sweep)
         split = any(o.value for o in data)
         return {
-            "steps": self._law(series.of(self.sweep, _steps), changed).as_json(),
+            "steps": self._law(series.of(self.sweep, _steps), changed, ("steps",)).as_json(),
             "native": self.native.law(lambda run: run.tally.native or 0),
             "work": self.native.law(lambda run: costs.work(run.tally)),
             "elements": self.native.law(lambda run: costs.elements(run.tally)),
             "operations": {
-                name: self._law(operations[name], changed).as_json() for name in sorted(operations)
+                name: self._law(operations[name], changed, ("operation", name)).as_json()
+                for name in sorted(operations)
             },
+            "bound": self._bound(changed),
             "parts": {
                 "exact": self._law(exact, changed).as_json() if split else None,
                 "data": self._law(data, changed).as_json() if split else None,
             },
         }
+
+    def _bound(self, changed: bool) -> dict[str, Any] | None:
+        """Give the proved upper bound of all steps, where the steps themselves are not proved."""
+        observations = series.of(self.sweep, _steps)
+        if self.forms is None or changed or not observations:
+            return None
+        if self.forms.shape("steps")[0] is not None:
+            return None
+        bound = self.forms.most(observations)
+        if bound is None:
+            return None
+        names = self.sweep.names
+        return Law(
+            bound.formula,
+            leading_term(bound.main, names),
+            "proved",
+            holds_from=bound.holds_from if len(names) == 1 else None,
+            checked_at=tuple(o.at[0] if len(names) == 1 else list(o.at) for o in observations),
+            note="an upper bound: the data may decide for less",
+            names=names,
+        ).as_json()
 
     def lines(self) -> list[dict[str, Any]]:
         """Give the record's ``lines``: those of the subject's file, and costly ones elsewhere."""
@@ -205,8 +256,10 @@ class Findings:
                     "line": line,
                     "source": linecache.getline(file, line).strip("\n"),
                     "function": None,
-                    "frequency": self._law(self._lines[file, line, "frequency"], changed).as_json(),
-                    "steps": self._law(steps, changed).as_json(),
+                    "frequency": self._law(
+                        self._lines[file, line, "frequency"], changed, (file, line, "frequency")
+                    ).as_json(),
+                    "steps": self._law(steps, changed, (file, line, "steps")).as_json(),
                     "share": share,
                     "dominant": False,
                 }
@@ -230,9 +283,11 @@ class Findings:
                     "line": line,
                     "own": own,
                     "calls": self._law(
-                        self._functions[file, name, line, "calls"], changed
+                        self._functions[file, name, line, "calls"],
+                        changed,
+                        ("calls", file, name, line),
                     ).as_json(),
-                    "steps": self._law(steps, changed).as_json(),
+                    "steps": self._law(steps, changed, ("steps", file, name, line)).as_json(),
                     "share": self._share(steps),
                 }
             )

@@ -19,8 +19,9 @@ from steplaw.host.runner import Runner
 from steplaw.record import AuditRecord
 from steplaw.repeat import Repeat, run_again
 from steplaw.store import Kept, machine, open_store
+from steplaw.structure import Forms, Plan, plan_for
 from steplaw.study import Study, make_study
-from steplaw.sweep import Sweep, interrupted, sweep
+from steplaw.sweep import Sweep, extend, interrupted, sweep
 from steplaw.timed import hold_against_clock, points_to_time, undecided
 from steplaw.wording import listing
 
@@ -144,10 +145,13 @@ def run(study: Study, report: Report | None = None) -> AuditRecord:
     """
     with _hosts(study) as hosts:
         about = hosts.counting.about
+        plan = plan_for(study.subject)
         swept = _sweep(study, hosts.counting, report)
+        _run_what_proofs_want(study, hosts.counting, plan, swept, report)
         repeat = _run_again(hosts.again, swept)
         _keep_what_repeats(hosts, repeat)
-        findings = Findings(swept, study.figure, about["loaded"], repeat)
+        forms = Forms(plan, swept)
+        findings = Findings(swept, study.figure, about["loaded"], repeat, forms)
         timed = _hold_against_clock(study, hosts.timing, swept, report)
     return AuditRecord(_record(study, about, swept, findings, repeat, timed))
 
@@ -199,16 +203,39 @@ def _crew(study: Study, stack: ExitStack) -> Crew | None:
 
 
 def _sweep(study: Study, runner: Asker, report: Report | None) -> Sweep:
-    def tell(at: Mapping[str, int], done: int, rest: int | None) -> None:
-        if report is not None:
-            report("counting", at, done, rest)
-
     swept = sweep(
-        runner, study.plan, draws=study.draws, every=study.every, asked=study.asked, report=tell
+        runner,
+        study.plan,
+        draws=study.draws,
+        every=study.every,
+        asked=study.asked,
+        report=_counting(report),
     )
     if not swept.runs and swept.stopped is not None:
         _refuse_if_not_the_subjects(swept.stopped)
     return swept
+
+
+def _run_what_proofs_want(
+    study: Study, runner: Asker, plan: Plan | str, swept: Sweep, report: Report | None
+) -> None:
+    """Add the sizes with which counts settle every coefficient of a form that the code fixes."""
+    if study.only_sizes or swept.stopped is not None or not swept.runs:
+        return
+    try:
+        missing = Forms(plan, swept).missing()
+        if missing:
+            extend(runner, swept, missing, study.draws, _counting(report))
+    except KeyboardInterrupt:
+        swept.stopped = interrupted(swept.at(max(swept.runs)))
+
+
+def _counting(report: Report | None) -> Callable[[Mapping[str, int], int, int | None], None]:
+    def tell(at: Mapping[str, int], done: int, rest: int | None) -> None:
+        if report is not None:
+            report("counting", at, done, rest)
+
+    return tell
 
 
 def _refuse_if_not_the_subjects(stopped: Failure) -> None:

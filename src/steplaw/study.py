@@ -51,6 +51,8 @@ class Study:
         Runs made at once; as many as there are processors by default.
     cluster : str, optional
         Address of a Dask scheduler whose workers make the runs.
+    only_sizes : bool
+        Whether no sizes are added to the plan.
     """
 
     subject: SubjectRef
@@ -65,6 +67,7 @@ class Study:
     fresh: bool = False
     processes: int | None = None
     cluster: str | None = None
+    only_sizes: bool = False
 
     @property
     def every(self) -> bool:
@@ -153,6 +156,7 @@ def make_study(
         fresh=fresh,
         processes=processes,
         cluster=cluster,
+        only_sizes=only_sizes,
     )
 
 

@@ -103,35 +103,86 @@ def sweep(
     result = Sweep(plan.names, whole=every)
     wanted = {tuple(p[name] for name in plan.names) for p in asked}
     todo = [tuple(p[name] for name in plan.names) for p in plan.points]
-    spent = 0
+    course = _Course(runner, result, draws, wanted, report)
     for place, point in enumerate(todo):
-        if point not in wanted and _is_too_long(result, point, draws, spent):
-            result.left_out.append(point)
-            continue
-        _expect(
-            runner,
-            result,
-            [p for p in todo[place:] if p in wanted or not _is_too_long(result, p, draws, spent)],
-            draws,
-        )
-        tell = _teller(report, result, todo[place:], draws, spent)
-        tell(0)
         try:
-            runs = _runs(runner, result.at(point), draws, result, tell)
+            if not course.go_on(todo[place:]):
+                break
         except KeyboardInterrupt:
             result.stopped = interrupted(result.at(point))
             break
-        except RunFailed as failed:
-            if point in wanted or result.runs or failed.failure.kind not in ("raised", "feed"):
-                result.stopped = failed.failure
-                break
-            result.passed_over.append(failed.failure)
-            continue
-        result.runs[point] = runs
-        spent += sum(r.tally.steps * r.times for r in runs)
     if not result.runs and result.passed_over and result.stopped is None:
         result.stopped = result.passed_over.pop()
     return result
+
+
+@dataclass(slots=True)
+class _Course:
+    """A sweep under way."""
+
+    runner: Asker
+    result: Sweep
+    draws: int
+    wanted: set[Point]
+    report: Report | None
+    spent: int = 0
+
+    def go_on(self, todo: Sequence[Point]) -> bool:
+        """Run the first of the sizes that are left; give whether the sweep goes on."""
+        result, point = self.result, todo[0]
+        if self._is_left_out(point):
+            result.left_out.append(point)
+            return True
+        soon = [p for p in todo if not self._is_left_out(p)]
+        _expect(self.runner, result, soon, self.draws)
+        tell = _teller(self.report, result, todo, self.draws, self.spent)
+        tell(0)
+        try:
+            runs = _runs(self.runner, result.at(point), self.draws, result, tell)
+        except RunFailed as failed:
+            kind = failed.failure.kind
+            if point in self.wanted or result.runs or kind not in ("raised", "feed"):
+                result.stopped = failed.failure
+                return False
+            result.passed_over.append(failed.failure)
+            return True
+        result.runs[point] = runs
+        self.spent += sum(r.tally.steps * r.times for r in runs)
+        return True
+
+    def _is_left_out(self, point: Point) -> bool:
+        if point in self.wanted:
+            return False
+        return _is_too_long(self.result, point, self.draws, self.spent)
+
+
+def extend(
+    runner: Asker, swept: Sweep, sizes: Sequence[int], draws: int, report: Report | None = None
+) -> None:
+    """Run further sizes of a sweep over one size, below its largest.
+
+    Parameters
+    ----------
+    runner : Asker
+        The subject.
+    swept : Sweep
+        Takes the further runs, in order of size.
+    sizes : sequence of int
+        The sizes; those that the sweep has left out or passed over are not run.
+    draws : int
+        Inputs at each size where they differ from draw to draw.
+    report : callable, optional
+        As for `sweep`.
+    """
+    barred = {tuple(f.at.values()) for f in swept.passed_over}
+    largest = max(swept.runs)
+    points = [(n,) for n in sizes if (n,) not in swept.runs and (n,) not in barred]
+    below = tuple(swept.at(p) for p in points if p < largest)
+    plan = SizePlan(swept.names, below, (), given=False)
+    more = sweep(runner, plan, draws=draws, every=swept.whole, report=report)
+    swept.runs = dict(sorted({**swept.runs, **more.runs}.items()))
+    swept.varies |= more.varies
+    swept.stopped = swept.stopped or more.stopped
 
 
 def _expect(runner: Asker, result: Sweep, todo: Sequence[Point], draws: int) -> None:

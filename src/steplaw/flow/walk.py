@@ -90,9 +90,14 @@ class Frame:
     staying: dict[int, list[Poly]] = field(default_factory=dict)
 
 
-@lru_cache(maxsize=512)
 def nest_of(code: CodeType) -> Nest:
     """Give the loops of a code object."""
+    return _nest_of(code, code.co_filename)
+
+
+@lru_cache(maxsize=512)
+def _nest_of(code: CodeType, file: str) -> Nest:
+    """Give the loops of a code object; equal ones of two files are not one."""
     return Nest(CaughtBlocks(Decoded(code)))
 
 

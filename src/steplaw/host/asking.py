@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from abc import ABC, abstractmethod
 from collections.abc import Callable, Iterator, Mapping, Sequence
-from dataclasses import asdict, dataclass
+from dataclasses import asdict, dataclass, field
 from types import TracebackType
 from typing import Any, Self, TypeGuard
 
@@ -45,6 +45,10 @@ class Run:
         Inputs that gave this tally.
     input : str
         The first of them, for a person to read; empty for draws.
+    unread : str, optional
+        What the subject gives that nothing has read.
+    measured : mapping of str to pair
+        Type and size of the first of them's arguments, by parameter.
     """
 
     at: Size
@@ -56,6 +60,7 @@ class Run:
     times: int = 1
     input: str = ""
     unread: str | None = None
+    measured: Mapping[str, tuple[str, int]] = field(default_factory=dict)
 
 
 class RunFailed(Exception):
@@ -319,4 +324,5 @@ def _run(at: Size, draw: int, reply: Mapping[str, Any]) -> Run:
         times=reply.get("times", 1),
         input=reply.get("input", ""),
         unread=reply.get("unread"),
+        measured={name: (kind, size) for name, (kind, size) in reply["measured"].items()},
     )

@@ -11,6 +11,7 @@ from typing import Any
 from steplaw import subject as subjects
 from steplaw.feed import Feed, FeedError, Input
 from steplaw.host.fork import Reply, failure
+from steplaw.host.measured import measured
 from steplaw.host.watch import Watch, change
 from steplaw.subject import Subject
 from steplaw.tally.assembled import tally_of
@@ -71,6 +72,7 @@ class CountedSubject:
             yield failure("feed", str(error))
             return
         self._fresh()
+        sizes = measured(self.subject.function, made.args, made.kwargs)
         before = Snapshot(self.registry)
         LEDGER.take()
         try:
@@ -84,6 +86,7 @@ class CountedSubject:
         codes = list(counts_between(before, Snapshot(self.registry)))
         reply = self._reply(codes, taken)
         reply["random"] = made.random
+        reply["measured"] = sizes
         reply["unread"] = subjects.unread(result)
         yield reply
 
@@ -117,6 +120,7 @@ class CountedSubject:
         while one is not None:
             number, made = one
             text = _shown(made)
+            sizes = measured(self.subject.function, made.args, made.kwargs)
             self._fresh()
             before = self.watch.readings()
             LEDGER.take()
@@ -130,8 +134,10 @@ class CountedSubject:
             taken = LEDGER.take()
             after = self.watch.readings()
             key = change(before, after), taken
-            seen = distinct.setdefault(key, [0, number, text, before, after])
+            seen = distinct.setdefault(key, [0, number, text, sizes, before, after])
             seen[0] += 1
+            if seen[3] != sizes:
+                seen[3] = {k: v for k, v in sizes.items() if seen[3].get(k) == v}
             if number % 256 == 255:
                 yield {"progress": number + 1}
             one = next(inputs, None)
@@ -139,14 +145,14 @@ class CountedSubject:
         if unwatched:
             yield {"widen": unwatched}
             return
-        for (_, taken), (times, number, text, before, after) in distinct.items():
+        for (_, taken), (times, number, text, sizes, before, after) in distinct.items():
             codes = [
                 CodeCounts(probed, before.get(probed), reading)
                 for probed, reading in after.items()
                 if before.get(probed) != reading
             ]
             reply = self._reply(codes, taken)
-            reply.update(times=times, first=number, input=text)
+            reply.update(times=times, first=number, input=text, measured=sizes)
             yield reply
 
     def _fresh(self) -> None:

@@ -70,9 +70,23 @@ def operations(counts: CodeCounts) -> Iterator[tuple[str, int]]:
     decoded = counts.probed.graph.decoded
     for k, n in enumerate(counts.instructions):
         if n:
-            operation = CLASS_OF.get(decoded.ops[k])
-            if operation is not None and not _of_the_compiler(decoded, k):
+            operation = class_of(decoded, k)
+            if operation is not None:
                 yield operation, n
+
+
+def class_of(decoded: Decoded, k: int) -> str | None:
+    """Give the operation class of an instruction.
+
+    Parameters
+    ----------
+    decoded : Decoded
+        A code object.
+    k : int
+        Index of the instruction.
+    """
+    operation = CLASS_OF.get(decoded.ops[k])
+    return None if operation is None or _of_the_compiler(decoded, k) else operation
 
 
 def _of_the_compiler(decoded: Decoded, k: int) -> bool:
