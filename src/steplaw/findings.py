@@ -18,6 +18,7 @@ from steplaw.native import NativeFindings
 from steplaw.repeat import Repeat
 from steplaw.structure import Forms
 from steplaw.sweep import Sweep
+from steplaw.tally.classes import CLASSES
 
 #: Lines outside the subject's file are listed from this share of the steps on.
 SHARE_LISTED = 0.01
@@ -140,7 +141,7 @@ class Findings:
             return ("steps",)
         if self.name.startswith("line:"):
             return self.loaded["file"], int(self.name[5:]), "frequency"
-        return "operation", self.name
+        return ("operation", self.name) if self.name in CLASSES else ()
 
     def figure(self) -> dict[str, Any]:
         """Give the record's ``figure``."""
