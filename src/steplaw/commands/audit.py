@@ -64,22 +64,36 @@ from steplaw.wording import listing
 @click.option("--cluster", metavar="ADDRESS", help="A Dask scheduler whose workers make the runs.")
 @click.option("--json", "json_path", metavar="PATH|-", help="Write the record there.")
 @click.option("--page", "page_path", metavar="PATH", help="Write the sheet as an HTML page.")
+@click.option("--plot", "plot_path", metavar="PATH", help="Write the plots, .svg or .png.")
 def command(
-    subject: str, json_path: str | None, page_path: str | None, sizes: tuple[str, ...], **given: Any
+    subject: str,
+    json_path: str | None,
+    page_path: str | None,
+    plot_path: str | None,
+    sizes: tuple[str, ...],
+    **given: Any,
 ) -> int:
     """Find the law that the step count of SUBJECT follows.
 
     SUBJECT is path/to/file.py:name, package.module:name, or either with Class.method.
     """
     study = make_study(subject, sizes=sizes or None, again=_again(), **given)
-    must_be_writable(json_path, page_path)
+    _check_outputs(json_path, page_path, plot_path)
     from steplaw.commands.progress import progress
     from steplaw.job import run
 
     with progress() as report:
         record = run(study, report)
-    deliver(record, json_path, page_path)
+    deliver(record, json_path, page_path, plot_path)
     return _say_what_failed(record, subject)
+
+
+def _check_outputs(json_path: str | None, page_path: str | None, plot_path: str | None) -> None:
+    if plot_path is not None:
+        from steplaw.faces.plot import kind_of
+
+        kind_of(plot_path)
+    must_be_writable(json_path, page_path, plot_path)
 
 
 def _say_what_failed(record: Record, subject: str) -> int:
@@ -107,7 +121,7 @@ def _told(stopped: Mapping[str, Any], subject: str) -> str:
 
 
 #: Where the record goes and where the runs are made: no part of what is audited.
-_WITH_VALUE = ("--json", "--page", "--processes", "--cluster")
+_WITH_VALUE = ("--json", "--page", "--plot", "--processes", "--cluster")
 
 
 def _again() -> str:

@@ -12,7 +12,12 @@ from steplaw.record import Record
 
 
 def deliver(
-    record: Record, json_path: str | None, page_path: str | None = None, *, error: bool = False
+    record: Record,
+    json_path: str | None,
+    page_path: str | None = None,
+    plot_path: str | None = None,
+    *,
+    error: bool = False,
 ) -> None:
     """Show a record's sheet and write the record to where it was asked for.
 
@@ -26,6 +31,8 @@ def deliver(
         A path, or ``-`` for standard output, which then holds the record alone.
     page_path : str or None
         Path of an HTML page.
+    plot_path : str or None
+        Path of a picture of the plots, ``.svg`` or ``.png``.
     error : bool
         Whether the sheet goes to standard error in any case.
     """
@@ -38,6 +45,10 @@ def deliver(
         from steplaw.faces import render
 
         write(page_path, str(render(record, "page")))
+    if plot_path is not None:
+        from steplaw.faces.plot import kind_of, picture
+
+        write(plot_path, picture(record, kind_of(plot_path)))
 
 
 def must_be_writable(*paths: str | None) -> None:
@@ -110,6 +121,21 @@ def say(text: str) -> None:
         nobody_reads(sys.stdout)
 
 
+def say_bytes(data: bytes) -> None:
+    """Write bytes to standard output, for as long as someone reads them.
+
+    Parameters
+    ----------
+    data : bytes
+        Written as they are.
+    """
+    try:
+        sys.stdout.buffer.write(data)
+        sys.stdout.buffer.flush()
+    except BrokenPipeError:
+        nobody_reads(sys.stdout)
+
+
 def nobody_reads(stream: IO[str]) -> None:
     """Send to nowhere what a reader that has gone would have got.
 
@@ -123,8 +149,8 @@ def nobody_reads(stream: IO[str]) -> None:
     os.close(nowhere)
 
 
-def write(path: str, text: str) -> None:
-    """Write a text file.
+def write(path: str, content: str | bytes) -> None:
+    """Write a file, text as UTF-8.
 
     Raises
     ------
@@ -132,7 +158,8 @@ def write(path: str, text: str) -> None:
         If it cannot be written.
     """
     try:
-        Path(path).write_text(text, encoding="utf-8")
+        data = content.encode("utf-8") if isinstance(content, str) else content
+        Path(path).write_bytes(data)
     except OSError as error:
         hint = "give a path in a folder that can be written"
         raise CallError(f"cannot write {path}: {error.strerror or error}", hint) from None

@@ -8,7 +8,7 @@ from typing import Any
 from steplaw.errors import CallError
 
 _NAMED = {"steplaw.tally/1": "a tally", "steplaw.derive/1": "a derivation"}
-KINDS = ("terminal", "page", "markdown", "json")
+KINDS = ("terminal", "page", "markdown", "svg", "json")
 
 
 def render(record: Mapping[str, Any], as_: str, width: int = 80) -> str:
@@ -18,7 +18,7 @@ def render(record: Mapping[str, Any], as_: str, width: int = 80) -> str:
     ----------
     record : mapping
         A record of any schema of steplaw.
-    as_ : {"terminal", "page", "markdown", "json"}
+    as_ : {"terminal", "page", "markdown", "svg", "json"}
         The face.
     width : int
         Columns, for the terminal.
@@ -50,6 +50,10 @@ def render(record: Mapping[str, Any], as_: str, width: int = 80) -> str:
         from steplaw.faces.page import page
 
         return page(record)
+    if as_ == "svg":
+        from steplaw.faces.plot import picture
+
+        return picture(record, "svg").decode("utf-8")
     from steplaw.faces.markdown import comment
 
     return comment(record)

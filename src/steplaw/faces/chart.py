@@ -77,7 +77,7 @@ def growth_chart(growth: Growth, place: int) -> str:
     str
         An ``svg`` element; what it holds of the record is escaped.
     """
-    every = [*growth.counts, *growth.law, *growth.beyond, *growth.time]
+    every = [*growth.counts, *growth.law, *growth.beyond, *growth.work, *growth.time]
     low, high = min(x for x, _ in every), max(x for x, _ in every)
     bottom = 10 ** math.floor(math.log10(min(y for _, y in every)) + 1e-9)
     top = 10 ** math.ceil(math.log10(max(y for _, y in every)) - 1e-9)
@@ -86,6 +86,8 @@ def growth_chart(growth: Growth, place: int) -> str:
     parts = [_frame(axes), _across(axes, name), _up(axes)]
     if growth.law:
         parts.append(f'<path class="law" d="{axes.path(growth.law)}"/>')
+    if growth.work:
+        parts.append(f'<path class="work-law" d="{axes.path(growth.work)}"/>')
     if len(growth.beyond) > 1:
         parts.append(f'<path class="law beyond" d="{axes.path(growth.beyond)}"/>')
     parts += [
@@ -206,7 +208,7 @@ def _up(axes: Axes) -> str:
     for power in range(low, high + 1, step):
         y = axes.y(10.0**power)
         out += f'<path class="grid" d="M{LEFT} {y:.1f}H{WIDTH - axes.right}"/>'
-        out += _left(y, "1" if power == 0 else f"10{_raised(power)}")
+        out += _left(y, "1" if power == 0 else f"10{raised(power)}")
     return out
 
 
@@ -223,10 +225,11 @@ def _ticks(low: float, high: float, steps: Sequence[int]) -> list[int]:
 
 def _power(size: int) -> str:
     power = round(math.log10(size))
-    return f"10{_raised(power)}" if size >= 10_000 and size == 10**power else grouped(size)
+    return f"10{raised(power)}" if size >= 10_000 and size == 10**power else grouped(size)
 
 
-def _raised(power: int) -> str:
+def raised(power: int) -> str:
+    """Write an exponent."""
     return str(power).translate(str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻"))
 
 
@@ -248,6 +251,9 @@ def _key(growth: Growth) -> str:
     if growth.law:
         line = '<path class="law" d="M0 0H16"/>'
         rows.append(f'{line}<text x="20" y="4">law</text>')
+    if growth.work:
+        line = '<path class="work-law" d="M0 0H16"/>'
+        rows.append(f'{line}<text x="20" y="4">law with native visits</text>')
     if growth.time:
         rows.append(f'{_cross(8, 0)}<text x="20" y="4">time</text>')
     made = "".join(

@@ -30,8 +30,9 @@ class Growth:
         The size at which each is 1.
     says : str
         What 1 stands for.
-    counts, law, beyond, time : tuple of (float, float)
-        Counted values; the law over the sizes run; the law beyond them; times.
+    counts, law, beyond, work, time : tuple of (float, float)
+        Counted values; the law over the sizes run; the law beyond them; the law with native
+        visits, at the rate that the clock check took them at, where they matter; times.
     """
 
     along: Along
@@ -40,6 +41,7 @@ class Growth:
     counts: Points
     law: Points
     beyond: Points
+    work: Points
     time: Points
 
 
@@ -68,31 +70,51 @@ def growth(record: Json, along: Along) -> Growth | None:
     says = f"1 = {clean(figure['name'])} {number(str(count))}"
     if unit in times:
         says += f" and {duration(times[unit])}"
-    read = ways.reader(figure["law"], along.names)
-    law: list[tuple[float, float]] = []
-    beyond: list[tuple[float, float]] = []
     largest = max(counts)
-    if read is not None:
-        low = max(1, ways.starts_at(figure["law"], along), min(counts))
-        for size in ways.stops(low, BEYOND * largest):
-            found = read(along.at(size))
-            if ways.finite(found) and found > 0:
-                point = (float(size), float(found / count))
-                if size <= largest:
-                    law.append(point)
-                elif point[1] <= HIGHEST:
-                    beyond.append(point)
+    low = max(1, ways.starts_at(figure["law"], along), min(counts))
+    law = _curve(figure["law"], along, low, BEYOND * largest, count)
+    inside = tuple(point for point in law if point[0] <= largest)
+    beyond = tuple(point for point in law if point[0] > largest and point[1] <= HIGHEST)
     return Growth(
         along,
         unit,
         f"{says} at {clean(along.name)} = {unit}",
         tuple((float(size), float(found / count)) for size, found in counts.items()),
-        tuple(law),
-        tuple(law[-1:] + beyond),
+        inside,
+        inside[-1:] + beyond,
+        _work(record, along, low, largest, unit),
         tuple((float(size), found / times[unit]) for size, found in times.items())
         if unit in times
         else (),
     )
+
+
+def _curve(law: Json, along: Along, low: int, high: int, unit: ways.Number) -> Points:
+    read = ways.reader(law, along.names)
+    if read is None:
+        return ()
+    found = [(size, read(along.at(size))) for size in ways.stops(low, high)]
+    return tuple(
+        (float(size), float(value) / float(unit))
+        for size, value in found
+        if ways.finite(value) and value > 0
+    )
+
+
+def _work(record: Json, along: Along, low: int, high: int, unit: int) -> Points:
+    laws, clock = record["laws"], record.get("clock") or {}
+    held, led = clock.get("held") == "work", (record.get("ledger") or {}).get("leads")
+    steps = ways.reader(laws.get("steps"), along.names)
+    native = ways.reader(laws.get("native"), along.names)
+    if record["figure"]["name"] != "steps" or not (held or led) or not steps or not native:
+        return ()
+    rate = Fraction(str(clock["visit_rate"])) if held and clock.get("visit_rate") else 1
+    sizes = [*ways.stops(low, high), unit]
+    whole = [float(steps(along.at(n))) + float(rate * native(along.at(n))) for n in sizes]
+    one = whole.pop()
+    if not one > 0:
+        return ()
+    return tuple((float(n), v / one) for n, v in zip(sizes, whole, strict=False) if v > 0)
 
 
 def _counts(record: Json, along: Along) -> dict[int, Fraction]:

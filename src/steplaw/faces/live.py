@@ -38,7 +38,7 @@ def live(record: Json) -> dict[str, Any] | None:
         "figure": figure,
         "grade": law["grade"],
         "steps": _tree(record["laws"].get("steps"), names),
-        "native": _tree(record["laws"].get("native"), names),
+        "work": _work(record, names),
         "terms": terms,
         "lines": [
             {"frequency": _tree(line.get("frequency"), names)}
@@ -46,6 +46,7 @@ def live(record: Json) -> dict[str, Any] | None:
             for line in record.get("lines") or []
         ],
         "rate": _rate(record),
+        "timed": _timed(record, names),
         "start": [ways.starts_at(law, along) for along in found],
         "largest": [along.run[-1] for along in found],
         "stops": [_stops(law, along) for along in found],
@@ -56,12 +57,30 @@ def live(record: Json) -> dict[str, Any] | None:
     }
 
 
+def _work(record: Json, names: list[str]) -> Any:
+    """Give steps and native visits together, where the figure is steps and there are visits."""
+    laws = record["laws"]
+    same = (laws.get("work") or {}).get("formula") == (laws.get("steps") or {}).get("formula")
+    shown = record["figure"]["name"] == "steps" and not same
+    return _tree(laws.get("work"), names) if shown else None
+
+
 def _tree(law: Json | None, names: list[str]) -> Any:
     return tree((law or {}).get("formula"), names)
 
 
+def _timed(record: Json, names: list[str]) -> Any:
+    """Give what the clock was held against: steps, or steps and native visits at a rate."""
+    laws, clock = record["laws"], record.get("clock") or {}
+    steps = _tree(laws.get("steps"), names)
+    if clock.get("held") != "work":
+        return steps
+    native, rate = _tree(laws.get("native"), names), tree(clock.get("visit_rate"), ())
+    return ["+", steps, ["*", rate, native]] if steps and native and rate else None
+
+
 def _rate(record: Json) -> list[float] | None:
-    """Give nanoseconds a step, least and most, where time follows the steps."""
+    """Give nanoseconds a step, least and most, where time follows what it was held against."""
     clock = record.get("clock") or {}
     between = clock.get("ns_per_step_interval")
     return list(between) if between and clock.get("agrees") is True else None

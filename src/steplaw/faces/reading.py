@@ -141,6 +141,48 @@ def verdict(record: Json, unicode: bool = True) -> list[str]:
     return out
 
 
+def ledger_rows(record: Json, unicode: bool = True, most: int | None = None) -> list[list[str]]:
+    """Give the native ledger: line, operation, times, visits, how charged, share of all work.
+
+    Parameters
+    ----------
+    record : mapping
+        A `steplaw.audit/1` record.
+    unicode : bool
+        As for `pretty`.
+    most : int, optional
+        Width that each law keeps to.
+
+    Returns
+    -------
+    list of list of str
+        Costliest first.
+    """
+    rows = (record.get("ledger") or {}).get("rows") or []
+    return [
+        [
+            f"{clean(row['file']).rsplit('/', 1)[-1]}:{row['line']}",
+            clean(row["operation"], unicode),
+            law_text(row["times"], unicode, most),
+            law_text(row["visits"], unicode, most),
+            row["charge"],
+            percent(row["share"]),
+        ]
+        for row in sorted(rows, key=lambda row: -row["share"])
+    ]
+
+
+def not_charged(record: Json) -> list[str]:
+    """Give one line for each C call that the native ledger has no rule for."""
+    rows = (record.get("ledger") or {}).get("not_charged") or []
+    return [
+        f"{clean(row['operation'])} at {clean(row['file']).rsplit('/', 1)[-1]}:{row['line']}, "
+        f"{number(row['times'])} times, on at most {number(row['largest'])} elements"
+        + (", growing with the size" if row["grows"] else "")
+        for row in rows
+    ]
+
+
 def evidence(law: Json, names: Sequence[str], unicode: bool = True) -> list[tuple[str, str]]:
     """Give what a law rests on: label and text.
 

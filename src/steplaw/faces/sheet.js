@@ -70,7 +70,7 @@
   const showTime = (steps) => {
     if (!laws.rate || !steps || steps.none) {
       write("live-time", "not told");
-      write("live-rate", laws.rate ? "" : "no clock that follows the steps");
+      write("live-rate", laws.rate ? "" : "no clock that follows the law");
       return;
     }
     const [low, high] = laws.rate.map((rate) => (Law.asFloat(steps) * rate) / 1e9);
@@ -116,8 +116,9 @@
     const [text, kind] = told(found);
     write("live-figure", holds ? (exact ? text : `about ${text}`) : "no law");
     write("live-how", holds && exact ? how[kind] : "");
+    if (laws.work) write("live-work", holds ? told(Law.value(laws.work, named))[0] : "no law");
     const steps = laws.steps && Law.value(laws.steps, named);
-    showTime(holds ? steps : null);
+    showTime(holds && laws.timed ? Law.value(laws.timed, named) : null);
     write("live-where", where(sizes));
     showTerms(named);
     showLines(named, steps);

@@ -60,7 +60,7 @@ def view(record: Json) -> dict[str, Any]:
 
 
 def _loud(clause: str) -> bool:
-    return clause.isupper() or clause.startswith("TIME DEPARTS")
+    return clause.isupper() or clause.startswith(("TIME DEPARTS", "NATIVE VISITS LEAD"))
 
 
 def _law(record: Json) -> dict[str, Any]:
@@ -220,18 +220,20 @@ def _operations(record: Json) -> dict[str, Any] | None:
 
 
 def _native(record: Json) -> dict[str, Any]:
-    law = record["laws"].get("native")
-    tallies = [tally for tally in record.get("tallies") or [] if tally.get("native") is not None]
-    rows = [
-        (str(line["line"]), clean(line.get("source") or "").strip(), reading.law_text(native))
-        for line in record.get("lines") or []
-        if (native := line.get("native")) and native.get("formula") not in (None, "0")
-    ]
+    laws, ledger = record["laws"], record.get("ledger")
+    native, work = laws.get("native"), laws.get("work")
+    if not native and not ledger:
+        return {"counted": False, "out": "not counted"}
+    visits = reading.law_text(native)
     return {
-        "counted": law is not None or bool(tallies),
-        "law": reading.law_text(law) if law else "",
-        "grade": law["grade"] if law else "",
-        "lines": rows,
+        "counted": True,
+        "out": "no visits" if visits == "0" else (native or {}).get("grade", ""),
+        "law": visits,
+        "work": reading.law_text(work) if work else "",
+        "work_grade": work["grade"] if work else "",
+        "at": size(ledger["at"]) if ledger else "",
+        "rows": reading.ledger_rows(record),
+        "not_charged": reading.not_charged(record),
     }
 
 
@@ -240,14 +242,15 @@ def _clock(record: Json) -> dict[str, Any] | None:
     if not clock:
         return None
     between = clock.get("ns_per_step_interval")
-    departs = clock.get("departs_from")
     return {
         "word": {True: "agrees", False: "departs"}.get(clock["agrees"], "cannot tell"),
         "agrees": clock["agrees"],
         "reason": clean(clock["reason"]),
+        "unit": "whole" if clock.get("held") == "work" else "steps",
+        "alone": clean((clock.get("steps_alone") or {}).get("reason") or ""),
+        "visit_rate": clean(clock.get("visit_rate") or ""),
         "rows": reading.clock_rows(record),
         "rate": f"{between[0]:.3g} to {between[1]:.3g} ns a step" if between else "",
-        "departs": size(departs) if departs else "",
         "machine": clean(clock.get("machine") or ""),
         "rounds": clock.get("rounds"),
         "hidden": reading.hidden_cost(record),
