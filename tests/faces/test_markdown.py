@@ -6,7 +6,7 @@ import re
 
 import pytest
 import sample_records
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 from markdown_it import MarkdownIt
 from markdown_it.token import Token
@@ -54,6 +54,17 @@ def test_the_comment_tells_law_line_and_clock() -> None:
     assert "TIME DEPARTS" in shown(comment(sample_records.departing()))
     assert "Stopped early: IndexError" in shown(comment(sample_records.stopped()))
     assert "planning.py:47" in shown(comment(sample_records.unrepeatable()))
+
+
+@settings(max_examples=30, deadline=None)
+@given(st.lists(st.sampled_from(sample_records.PIECES) | st.text(max_size=4), max_size=6))
+def test_no_text_of_a_record_changes_the_comment_s_structure(pieces: list[str]) -> None:
+    def kinds(text: str) -> list[str]:
+        record = sample_records.every_text(sample_records.cubic(), text)
+        found = [token.type for token in flat(READER.parse(comment(record)))]
+        return [kind for kind in found if kind not in ("text", "text_special")]
+
+    assert kinds("x" + "".join(pieces) + "x") == kinds("x")
 
 
 @given(st.text(max_size=60))

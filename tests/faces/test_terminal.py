@@ -4,9 +4,12 @@ from __future__ import annotations
 
 import io
 import re
+import unicodedata
 
 import pytest
 import sample_records
+from hypothesis import given, settings
+from hypothesis import strategies as st
 from rich.cells import cell_len
 from rich.console import Console
 
@@ -43,6 +46,7 @@ def test_the_cubic_sheet_tells_the_whole_story_in_two_screens() -> None:
     assert re.search(r"128 +7 999 372 +168 ms +21 +3\.01 +3\.01", text)
     assert "worst-case execution time" in text
     assert "again: steplaw audit samples/ferry/planning.py:trios_of_sailings --feed" in text
+    assert re.search(r"top term +12 \(n = 1\), 23/6 n³ \(from n = 2 on\)", text)
     assert len(text.splitlines()) <= 80
 
 
@@ -102,6 +106,18 @@ def test_hostile_text_cannot_reach_the_terminal(width: int) -> None:
     # Markup is shown, not obeyed.
     assert "[bold red]" in text if width > 40 else "[bold" in text
     assert "\x1b]0;" not in printed(screen) and "\x1b[2J" not in printed(screen)
+
+
+@settings(max_examples=30, deadline=None)
+@given(st.lists(st.sampled_from(sample_records.PIECES) | st.text(max_size=4), max_size=6))
+def test_no_text_of_a_record_reaches_the_terminal_s_controls(pieces: list[str]) -> None:
+    screen = console(color_system="truecolor")
+    record = sample_records.every_text(sample_records.cubic(), "x" + "".join(pieces))
+    show(AuditRecord(record), screen)
+    left = CODES.sub("", printed(screen))
+    assert not [c for c in left if unicodedata.category(c)[0] == "C" and c != "\n"]
+    # Each line of the sheet is the sheet's own: none begins with what a record holds.
+    assert all(line[:1] in ("", " ", "┌", "│", "├", "└") for line in left.splitlines())
 
 
 def test_hostile_text_in_a_tally_cannot_reach_the_terminal() -> None:

@@ -9,11 +9,14 @@ from typing import Any
 from steplaw.faces import along as ways
 from steplaw.faces.along import Along, Number
 from steplaw.faces.notation import signed_terms, terms
+from steplaw.faces.text import clean, grouped
 
 Json = Mapping[str, Any]
 #: How far beyond the largest size run the shares are read, as a factor.
 BEYOND = 100
 LEAST_REACH = 1000
+#: Changes of the greatest part that one line can tell.
+MOST_TOLD = 5
 
 
 @dataclass(frozen=True, slots=True)
@@ -49,7 +52,7 @@ class Shares:
     bands: tuple[tuple[int, int], ...]
 
 
-def term_shares(record: Json, along: Along) -> Shares | None:
+def term_shares(record: Json, along: Along, unicode: bool = True) -> Shares | None:
     """Give the shares of the terms of the figure's law.
 
     Parameters
@@ -58,6 +61,8 @@ def term_shares(record: Json, along: Along) -> Shares | None:
         A `steplaw.audit/1` record.
     along : Along
         The size that grows.
+    unicode : bool
+        As for `pretty`.
 
     Returns
     -------
@@ -67,7 +72,7 @@ def term_shares(record: Json, along: Along) -> Shares | None:
     law = record["figure"]["law"]
     names = along.names
     formula = law.get("formula")
-    labels = [label.removeprefix("+ ") for label in terms(formula)]
+    labels = [label.removeprefix("+ ") for label in terms(formula, unicode)]
     made = [ways.formula_reader(text, names) for text in signed_terms(formula)]
     if len(made) != len(labels) or len(made) < 2:
         return None
@@ -100,6 +105,59 @@ def line_shares(record: Json, along: Along) -> tuple[Shares | None, list[int]]:
             parts.append(Part(f"line {line['line']}", read))
             start = max(start, ways.starts_at(line["steps"], along))
     return (_shares(parts, along, start) if len(parts) > 1 else None), left_out
+
+
+def bands(shares: Shares) -> list[tuple[str, str]]:
+    """Give the sizes over which one part is the greatest, and which it is.
+
+    Parameters
+    ----------
+    shares : Shares
+        Shares of terms or lines.
+
+    Returns
+    -------
+    list of (str, str)
+        Such as ``("n = 1 to 3", "42")``.
+    """
+    name = clean(shares.along.name)
+    out = []
+    ends = [first - 1 for first, _ in shares.bands[1:]]
+    for (first, part), end in zip(shares.bands, [*ends, None], strict=True):
+        if end is None:
+            span = f"from {name} = {grouped(first)} on"
+        else:
+            span = f"{name} = {grouped(first)}" + (f" to {grouped(end)}" if end > first else "")
+        out.append((span, shares.labels[part]))
+    return out
+
+
+def told(record: Json, unicode: bool = True) -> list[tuple[str, str]]:
+    """Say which term and which line is the greatest where, in a line each.
+
+    Parameters
+    ----------
+    record : mapping
+        A `steplaw.audit/1` record.
+    unicode : bool
+        As for `pretty`.
+
+    Returns
+    -------
+    list of (str, str)
+        Label and text, where the greatest one changes with the size.
+    """
+    out = []
+    for along in ways.ways(record):
+        for label, shares in (
+            ("top term", term_shares(record, along, unicode)),
+            ("top line", line_shares(record, along)[0]),
+        ):
+            if shares is not None and 1 < len(shares.bands) <= MOST_TOLD:
+                spans = [f"{part} ({span})" for span, part in bands(shares)]
+                where = f", with {clean(along.where, unicode)}" if along.held else ""
+                out.append((label, ", ".join(spans) + where))
+    return out
 
 
 def _shares(parts: Sequence[Part], along: Along, start: int) -> Shares | None:

@@ -6,7 +6,7 @@ import re
 from collections.abc import Mapping, Sequence
 from typing import Any
 
-from steplaw.faces import reading
+from steplaw.faces import dominance, reading
 from steplaw.faces.text import clean, percent, sizes
 
 LINES_MOST = 6
@@ -45,12 +45,14 @@ def comment(record: Mapping[str, Any]) -> str:
         [label, f"{escape(reading.law_text(other))} ({escape(other['grade'])})"]
         for label, other in reading.named_laws(record)
     ]
+    rows += [[label, escape(value)] for label, value in dominance.told(record)]
     if record.get("clock"):
         rows.append(["clock", escape(record["clock"]["reason"])])
     plan = (record.get("sizes") or {}).get("plan") or []
     rows.append(["sizes", escape(sizes(plan, names))])
     out += _table(["", ""], rows)
     out += _lines(record)
+    out += _ledger(record)
     out += _faults(record)
     return "\n".join(out).rstrip() + "\n"
 
@@ -120,6 +122,14 @@ def _lines(record: Mapping[str, Any]) -> list[str]:
             ]
         )
     return _table(["line", "source", "frequency", "share of steps"], rows)
+
+
+def _ledger(record: Mapping[str, Any]) -> list[str]:
+    rows = reading.ledger_rows(record)[:LINES_MOST]
+    if not rows:
+        return []
+    heads = ["line", "in C", "times", "element visits", "charged", "share of all work"]
+    return _table(heads, [[escape(cell) for cell in row] for row in rows])
 
 
 def _faults(record: Mapping[str, Any]) -> list[str]:

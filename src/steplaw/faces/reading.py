@@ -183,6 +183,11 @@ def not_charged(record: Json) -> list[str]:
     ]
 
 
+def is_loud(clause: str) -> bool:
+    """Whether a clause of the verdict is one that must not be overlooked."""
+    return clause.isupper() or clause.startswith(("TIME DEPARTS", "NATIVE VISITS LEAD"))
+
+
 def evidence(law: Json, names: Sequence[str], unicode: bool = True) -> list[tuple[str, str]]:
     """Give what a law rests on: label and text.
 
@@ -224,14 +229,20 @@ def named_laws(record: Json) -> list[tuple[str, Json]]:
     found = [
         ("exact part", parts.get("exact")),
         ("data part", parts.get("data")),
-        ("least", figure.get("least")),
-        ("most", figure.get("most")),
-        ("variance", figure.get("variance")),
+        *_spread(figure),
         *whole_laws(record),
     ]
     if figure["name"] != "steps":
         found.insert(0, ("all steps", laws.get("steps")))
     return [(name, law) for name, law in found if law]
+
+
+def _spread(figure: Json) -> list[tuple[str, Json | None]]:
+    """Give the laws of the spread; none where every input gave the same."""
+    named = [(name, figure.get(name)) for name in ("least", "most", "variance")]
+    formulas = [(law or {}).get("formula") for _, law in named]
+    same = formulas == [figure["law"].get("formula")] * 2 + ["0"]
+    return [] if same else named
 
 
 def whole_laws(record: Json) -> list[tuple[str, Json | None]]:

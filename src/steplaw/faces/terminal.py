@@ -6,7 +6,7 @@ import io
 from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING, Any
 
-from steplaw.faces import reading
+from steplaw.faces import dominance, reading
 from steplaw.faces.notation import pretty, terms
 from steplaw.faces.sheet import ACCENT, BAD, GOOD, HEAD, QUIET, UNSURE, Sheet
 from steplaw.faces.terminal_native import show_ledger
@@ -87,7 +87,7 @@ def _verdict(sheet: Sheet, record: Json) -> None:
     joint = " · " if sheet.unicode else "; "
     line = Text(style=HEAD)
     for place, clause in enumerate(reading.verdict(record, sheet.unicode)):
-        loud = clause.isupper() or clause.startswith("TIME DEPARTS")
+        loud = reading.is_loud(clause)
         line.append(joint if place else "", style=QUIET)
         line.append(sheet.clean(clause), style=BAD if loud else "")
     sheet.console.print()
@@ -121,6 +121,8 @@ def _law(sheet: Sheet, record: Json) -> None:
         shown = Text(reading.law_text(other, sheet.unicode) if claimed else "no law claimed")
         shown.append(f" ({other['grade']})", style=QUIET)
         table.add_row(label, shown)
+    for label, value in dominance.told(record, sheet.unicode):
+        table.add_row(label, Text(sheet.clean(value)))
     sheet.put(table)
 
 

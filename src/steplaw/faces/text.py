@@ -8,8 +8,9 @@ from collections.abc import Mapping, Sequence
 from fractions import Fraction
 from typing import Any
 
-# Controls, format characters (bidi overrides, zero width), lone surrogates, line separators.
-UNSAFE = {"Cc", "Cf", "Cs", "Zl", "Zp"}
+# Controls, format characters (bidi overrides, zero width), lone surrogates, line separators, and
+# what is assigned to nothing or to nobody, which may act as any of these elsewhere.
+UNSAFE = {"Cc", "Cf", "Cs", "Cn", "Co", "Zl", "Zp"}
 
 
 def clean(text: object, unicode: bool = True) -> str:

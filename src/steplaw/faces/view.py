@@ -10,7 +10,7 @@ from steplaw.faces import along as ways
 from steplaw.faces import evidence, reading
 from steplaw.faces.along import Along
 from steplaw.faces.chart import growth_chart, layers, shares_chart
-from steplaw.faces.dominance import Shares, line_shares, term_shares
+from steplaw.faces.dominance import bands, line_shares, term_shares
 from steplaw.faces.growth import growth
 from steplaw.faces.live import live
 from steplaw.faces.notation import pretty, terms
@@ -36,7 +36,7 @@ def view(record: Json) -> dict[str, Any]:
     return {
         "title": reading.title(record),
         "doc": clean(record["subject"].get("doc") or ""),
-        "verdict": [(clause, _loud(clause)) for clause in reading.verdict(record)],
+        "verdict": [(clause, reading.is_loud(clause)) for clause in reading.verdict(record)],
         "names": ", ".join(clean(name) for name in reading.size_names(record)) or "size",
         "law": _law(record),
         "growth": _growth(record, found),
@@ -57,10 +57,6 @@ def view(record: Json) -> dict[str, Any]:
         "again": clean(record["run_again"]),
         "live": live(record),
     }
-
-
-def _loud(clause: str) -> bool:
-    return clause.isupper() or clause.startswith(("TIME DEPARTS", "NATIVE VISITS LEAD"))
 
 
 def _law(record: Json) -> dict[str, Any]:
@@ -115,31 +111,6 @@ def _shares(record: Json, found: Sequence[Along], what: str) -> list[dict[str, A
                     "name": clean(along.name),
                 }
             )
-    return out
-
-
-def bands(shares: Shares) -> list[tuple[str, str]]:
-    """Give the sizes over which one part is the greatest, and which it is.
-
-    Parameters
-    ----------
-    shares : Shares
-        Shares of terms or lines.
-
-    Returns
-    -------
-    list of (str, str)
-        Such as ``("n = 1 to 3", "42")``.
-    """
-    name = clean(shares.along.name)
-    out = []
-    ends = [first - 1 for first, _ in shares.bands[1:]]
-    for (first, part), end in zip(shares.bands, [*ends, None], strict=True):
-        if end is None:
-            span = f"from {name} = {grouped(first)} on"
-        else:
-            span = f"{name} = {grouped(first)}" + (f" to {grouped(end)}" if end > first else "")
-        out.append((span, shares.labels[part]))
     return out
 
 
