@@ -10,6 +10,7 @@ from typing import Any
 
 from steplaw import costs, series
 from steplaw.costs import Costs
+from steplaw.dominance import dominance, share_limit
 from steplaw.errors import CallError
 from steplaw.host.asking import Run
 from steplaw.law import find_law, leading_term, order
@@ -60,6 +61,7 @@ class Findings:
         self.changed = repeat.changed if repeat is not None else set()
         self.unsteady = repeat is not None and not repeat.holds
         self._orders: tuple[Any, ...] | None = None
+        self._limits: dict[tuple[str, int], Any] = {}
         self._known: dict[tuple[Any, ...], Law] = {}
         self._lines = series.of_many(sweep, _line_values)
         self._functions = series.of_many(sweep, _function_values)
@@ -245,12 +247,15 @@ class Findings:
     def lines(self) -> list[dict[str, Any]]:
         """Give the record's ``lines``: those of the subject's file, and costly ones elsewhere."""
         out = []
+        total = self._law(series.of(self.sweep, _steps), self.unsteady, ("steps",))
         for file, line in sorted({(k[0], k[1]) for k in self._lines}):
             steps = self._lines[file, line, "steps"]
+            changed = (file, line) in self.changed
+            law = self._law(steps, changed, (file, line, "steps"))
+            limit = self._limits[file, line] = share_limit(law, total)
             share = self._share(steps)
             if file != self.loaded["file"] and share < SHARE_LISTED:
                 continue
-            changed = (file, line) in self.changed
             out.append(
                 {
                     "file": file,
@@ -260,14 +265,20 @@ class Findings:
                     "frequency": self._law(
                         self._lines[file, line, "frequency"], changed, (file, line, "frequency")
                     ).as_json(),
-                    "steps": self._law(steps, changed, (file, line, "steps")).as_json(),
+                    "steps": law.as_json(),
                     "share": share,
+                    "share_limit": limit,
                     "dominant": False,
                 }
             )
         if out and self._total:
             max(out, key=_share_of)["dominant"] = True
         return out
+
+    def dominance(self) -> dict[str, Any] | None:
+        """Give the record's ``dominance``, once `lines` was asked for."""
+        steps = {(k[0], k[1]): values for k, values in self._lines.items() if k[2] == "steps"}
+        return dominance(self._limits, steps)
 
     def functions(self) -> list[dict[str, Any]]:
         """Give the record's ``functions``, the costliest at the largest size first."""

@@ -313,6 +313,7 @@ def _record(
         "tallies": findings.tallies(),
         "laws": findings.laws(),
         "lines": findings.lines(),
+        "dominance": findings.dominance(),
         "functions": findings.functions(),
         "ledger": findings.native.ledger(),
         "clock": timed,

@@ -363,3 +363,26 @@ def hidden_cost(record: Json) -> str | None:
         "or a sort, and the cost of memory. The clock sees both: look at the calls and the element "
         "reads of the lines that carry most."
     )
+
+
+def dominance(record: Json) -> str:
+    """Say which line leads as the size grows without bound, and from which size on.
+
+    Parameters
+    ----------
+    record : mapping
+        An audit record.
+    """
+    found = record.get("dominance")
+    if not found:
+        return ""
+    name = record["sizes"]["names"][0]
+    share = found["share"]
+    told = percent(_share_number(share)) + (f" ({share})" if isinstance(share, str) else "")
+    since = f"from {name} = {found['from']} on" if found["from"] is not None else "beyond these"
+    return f"as {name} grows, line {found['line']} tends to {told}; it leads {since}"
+
+
+def _share_number(share: Any) -> float:
+    top, _, below = str(share).partition("/")
+    return float(top) / float(below or 1)

@@ -177,6 +177,9 @@ def _lines(sheet: Sheet, record: Json) -> None:
     sheet.put(table)
     if left_out:
         sheet.say(f"and {left_out} lines with smaller shares", QUIET)
+    in_the_limit = reading.dominance(record)
+    if in_the_limit:
+        sheet.say(in_the_limit)
 
 
 def _fill_lines(
