@@ -19,8 +19,8 @@ if TYPE_CHECKING:
 Json = Mapping[str, Any]
 
 GRADE_STYLE = {"proved": GOOD, "exact": GOOD, "fitted": UNSURE, "open": BAD}
-VALUES_MOST = 12
-CLOCK_MOST = 10
+VALUES_MOST = 10
+CLOCK_MOST = 6
 FUNCTIONS_MOST = 8
 OPERATIONS_MOST = 6
 
