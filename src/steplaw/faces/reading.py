@@ -378,11 +378,12 @@ def dominance(record: Json) -> str:
         return ""
     name = record["sizes"]["names"][0]
     share = found["share"]
-    told = percent(_share_number(share)) + (f" ({share})" if isinstance(share, str) else "")
+    told = percent(share_number(share)) + (f" ({share})" if isinstance(share, str) else "")
     since = f"from {name} = {found['from']} on" if found["from"] is not None else "beyond these"
     return f"as {name} grows, line {found['line']} tends to {told}; it leads {since}"
 
 
-def _share_number(share: Any) -> float:
+def share_number(share: Any) -> float:
+    """Give a share that the record holds as a number or as the text of a fraction."""
     top, _, below = str(share).partition("/")
     return float(top) / float(below or 1)

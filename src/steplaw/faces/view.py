@@ -42,6 +42,7 @@ def view(record: Json) -> dict[str, Any]:
         "growth": _growth(record, found),
         "terms": _shares(record, found, "terms"),
         "by_line": _shares(record, found, "lines"),
+        "in_the_limit": clean(reading.dominance(record)),
         "no_law_lines": line_shares(record, found[0])[1] if found else [],
         "lines": _lines(record),
         "files": sorted({clean(line["file"]) for line in record.get("lines") or []}),
@@ -126,6 +127,9 @@ def _lines(record: Json) -> list[dict[str, Any]]:
             "steps": kept_whole(reading.law_text(line.get("steps"))),
             "grade": (line.get("steps") or {}).get("grade", ""),
             "share": percent(line.get("share") or 0.0),
+            "limit": ""
+            if line.get("share_limit") is None
+            else percent(reading.share_number(line["share_limit"])),
             "width": round(100 * (line.get("share") or 0.0), 1),
             "heavy": bool(line.get("dominant")),
         }
