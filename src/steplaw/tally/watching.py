@@ -7,6 +7,7 @@ it calls runs in frames that do not show.
 
 from __future__ import annotations
 
+import dis
 import sys
 from collections.abc import Callable
 from typing import TYPE_CHECKING, Any
@@ -47,9 +48,17 @@ _SPREAD = {
 }
 _INTRINSIC, _TO_TUPLE = _OP.get("CALL_INTRINSIC_1", -1), 6
 _NUMBERS = (int, float, complex)
-_FORMATS = frozenset(
-    _OP[n] for n in ("FORMAT_VALUE", "FORMAT_SIMPLE", "FORMAT_WITH_SPEC") if n in _OP
-)
+
+
+def _comparing(sign: str) -> int:
+    """Give the argument of COMPARE_OP for a sign, as the compiler writes it before a jump."""
+    code = compile(f"0 if a {sign} b else 1", "", "eval")
+    return next(x.arg or 0 for x in dis.get_instructions(code) if x.opname == "COMPARE_OP")
+
+
+_LESS, _GREATER = _comparing("<"), _comparing(">")
+#: One digit: the interpreter compares these in its quickest way.
+_SHORT = (1 << 30) - 1
 
 
 class Watching:
@@ -334,16 +343,48 @@ class Watching:
 
     def _operator(self, k: int, call: Any, checked: int, cover: Cover | None) -> None:
         """Write a comparison of an operand's type with the one seen last."""
-        writer = self._writer
+        writer, depth = self._writer, self._depth
         place = self._place(k)
-        slow, back, depth = writer.label(), writer.label(), self._depth
+        slow, back = writer.label(), writer.label()
+        lengthens = call is watch.binary and operands.makes_long(self._d.args[k])
+        if lengthens:
+            self._whole(k, place, cover)
         self._type_of(checked, cover)
         self._unless_quiet(place, slow, cover)
         writer.out.mark(back)
 
         def late() -> None:
             writer.out.mark(slow)
+            self._unless_other(checked, place, back, cover)
             self._beside(call, (2, 1), place, k, back, depth, cover)
+
+        self._late.append(late)
+
+    def _whole(self, k: int, place: int, cover: Cover | None) -> None:
+        """Write an operator between short whole numbers: its result is looked at, in line."""
+        writer, emit, depth = self._writer, self._writer.out.emit, self._depth - 1
+        there, behind = writer.label(), writer.label()
+        emit(_LOAD_CONST, place, cover=cover)
+        self._attribute("whole", cover)
+        emit(_TRUE, jump=there, cover=cover)
+        self._after[k] = behind
+
+        def late() -> None:
+            slow = writer.label()
+            writer.out.mark(there)
+            emit(self._d.ops[k], self._d.args[k], origin=k, cover=cover)
+            self._type_of(1, cover)
+            emit(_LOAD_CONST, self._const(int), cover=cover)
+            emit(_OP["IS_OP"], 0, cover=cover)
+            emit(_FALSE, jump=slow, cover=cover)
+            for limit, compared in ((_SHORT, _LESS), (-_SHORT, _GREATER)):
+                emit(_OP["COPY"], 1, cover=cover)
+                emit(_LOAD_CONST, self._const(limit), cover=cover)
+                emit(_OP["COMPARE_OP"], compared, cover=cover)
+                emit(_FALSE, jump=slow, cover=cover)
+            emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=behind)
+            writer.out.mark(slow)
+            self._beside(watch.result, (1,), place, k, behind, depth, cover)
 
         self._late.append(late)
 
@@ -430,6 +471,17 @@ class Watching:
         self._attribute("quiet", cover)
         emit(_OP["IS_OP"], 0, cover=cover)
         emit(_FALSE, jump=slow, cover=cover)
+
+    def _unless_other(self, checked: int, place: int, back: int, cover: Cover | None) -> None:
+        """Write a comparison of an operand's type with the one seen before the last."""
+        emit, there = self._writer.out.emit, self._writer.label()
+        self._type_of(checked, cover)
+        emit(_LOAD_CONST, place, cover=cover)
+        self._attribute("other", cover)
+        emit(_OP["IS_OP"], 0, cover=cover)
+        emit(_FALSE, jump=there, cover=cover)
+        emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=back)
+        self._writer.out.mark(there)
 
     def _beside(
         self,

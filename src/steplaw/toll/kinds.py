@@ -18,6 +18,7 @@ SIZED: frozenset[Any] = (
     | VIEWS
     | {OrderedDict}
 )
+COPIED_BY_SLICES: frozenset[Any] = frozenset({list, tuple, str, bytes, bytearray, array})
 SEQUENCES = (list, tuple, str, bytes, bytearray, deque, array)
 ITERATORS: frozenset[Any] = frozenset(
     {GeneratorType, map, filter, zip, enumerate, reversed}

@@ -34,9 +34,28 @@ class Place:
         while it is the same, nothing else is looked at.
     open : bool
         Whether a method call is still looked at.
+    other : object
+        The one seen before that.
+    whole : bool
+        Whether short whole numbers alone have met there: then the result is looked at.
+    found : tuple or None
+        The rule found for the call that is about to be made.
     """
 
-    __slots__ = ("argument", "file", "line", "name", "open", "quiet", "seen")
+    __slots__ = (
+        "argument",
+        "charges",
+        "file",
+        "found",
+        "line",
+        "long",
+        "name",
+        "open",
+        "other",
+        "quiet",
+        "seen",
+        "whole",
+    )
 
     def __init__(self, file: str, line: int, name: str = "", argument: int = 0) -> None:
         self.file = file
@@ -44,8 +63,13 @@ class Place:
         self.name = name
         self.argument = argument
         self.quiet: Any = NOTHING
+        self.other: Any = NOTHING
         self.open = True
+        self.whole = False
+        self.long = False
         self.seen = 0
+        self.found: Any = None
+        self.charges: dict[str, list[Any]] = {}
 
     def passed(self) -> None:
         """Note a pass with nothing to charge."""
@@ -53,12 +77,27 @@ class Place:
         if self.seen >= PASSES_SEEN:
             self.open = False
 
+    def settle(self, seen: object) -> None:
+        """Keep what was seen and has nothing to charge."""
+        if seen is not self.quiet:
+            self.other, self.quiet = self.quiet, seen
+
 
 class Ledger:
-    """Charges since the last time they were taken."""
+    """Charges since the last time they were taken.
+
+    Attributes
+    ----------
+    long_met : bool
+        Whether whole numbers have got long anywhere.
+    short : list of Place
+        Places that are passed in line as long as none has.
+    """
 
     def __init__(self) -> None:
-        self._charged: dict[tuple[str, int, str], list[Any]] = {}
+        self.long_met = False
+        self.short: list[Place] = []
+        self._charged: list[Place] = []
         self._uncharged: dict[tuple[str, int, str], list[Any]] = {}
 
     def charge(self, place: Place, operation: str, visits: int, exact: bool = True) -> None:
@@ -75,14 +114,17 @@ class Ledger:
         exact : bool
             Whether they are.
         """
-        key = place.file, place.line, operation
-        entry = self._charged.get(key)
+        charges = place.charges
+        entry = charges.get(operation)
         if entry is None:
-            self._charged[key] = [1, visits, exact]
-        else:
-            entry[0] += 1
-            entry[1] += visits
-            entry[2] = entry[2] and exact
+            if not charges:
+                self._charged.append(place)
+            charges[operation] = [1, visits, exact]
+            return
+        entry[0] += 1
+        entry[1] += visits
+        if not exact:
+            entry[2] = False
 
     def pass_over(self, place: Place, operation: str, sizes: Sequence[int]) -> None:
         """Note a C call that has no rule, with the sizes of its operands."""
@@ -104,7 +146,15 @@ class Ledger:
             File, line, operation, times, visits and whether they are exact; and file, line,
             operation, times and the largest operand.
         """
-        charged = tuple((*key, *entry) for key, entry in sorted(self._charged.items()))
+        sums: dict[tuple[str, int, str], list[Any]] = {}
+        for place in self._charged:
+            for operation, (times, visits, exact) in place.charges.items():
+                entry = sums.setdefault((place.file, place.line, operation), [0, 0, True])
+                entry[0] += times
+                entry[1] += visits
+                entry[2] = entry[2] and exact
+            place.charges = {}
+        charged = tuple((*key, *entry) for key, entry in sorted(sums.items()))
         uncharged = tuple((*key, *entry) for key, entry in sorted(self._uncharged.items()))
         self._charged.clear()
         self._uncharged.clear()

@@ -18,6 +18,8 @@ ADD, AND, FLOOR, LSHIFT, MATRIX, MULTIPLY, REMAINDER, OR, POWER, RSHIFT, SUBTRAC
 IN_PLACE = 13
 _SIGNS = ("+", "&", "//", "<<", "@", "*", "%", "|", "**", ">>", "-", "/", "^")
 #: Operators that can make a long number from short ones.
+_BY_VALUE = frozenset({LSHIFT, POWER})
+LONG = 1 << kinds.SHORT_BITS
 _LENGTHENS = frozenset({ADD, LSHIFT, MULTIPLY, POWER, SUBTRACT})
 Charge = tuple[str, int, bool]
 
@@ -44,8 +46,6 @@ def binary(argument: int, left: Any, right: Any) -> Charge | None:
     """
     kind, other = type(left), type(right)
     operator, in_place = argument % IN_PLACE, argument >= IN_PLACE
-    if kind is int and other is int:
-        return _long(argument, left, right)
     size = arrays.elements(left) or arrays.elements(right)
     if size:
         return f"array {sign(argument)}", _array_work(operator, left, right), operator != MATRIX
@@ -92,8 +92,18 @@ def _sets(argument: int, left: Any, right: Any) -> Charge | None:
     return None
 
 
-def _long(argument: int, left: int, right: int) -> Charge | None:
-    """Give the digit work of long whole numbers."""
+def whole(argument: int, left: int, right: int) -> Charge | None:
+    """Give the charge of an operator between whole numbers, None where they are short.
+
+    Parameters
+    ----------
+    argument : int
+        Of BINARY_OP.
+    left, right : int
+        Its operands.
+    """
+    if -LONG < left < LONG and -LONG < right < LONG and argument % IN_PLACE not in _BY_VALUE:
+        return None
     a, b = kinds.digits(left), kinds.digits(right)
     operator = argument % IN_PLACE
     if operator in (LSHIFT, POWER):
@@ -132,11 +142,15 @@ def comparison(argument: int, left: Any, right: Any) -> Charge | None:
 
 def slice_length(size: int, start: Any, stop: Any, step: Any) -> int | None:
     """Give the length of a slice, None where its ends are no plain numbers."""
-    try:
-        if all(x is None or type(x) is int for x in (start, stop, step)):
-            return len(range(*slice(start, stop, step).indices(size)))
-    except ValueError:
-        return 0
+    if step is None and (start is None or type(start) is int):
+        first = 0 if start is None else max(start + size, 0) if start < 0 else start
+        if stop is None:
+            return size - first if first < size else 0
+        if type(stop) is int:
+            last = max(stop + size, 0) if stop < 0 else min(stop, size)
+            return last - first if first < last else 0
+    if all(x is None or type(x) is int for x in (start, stop, step)) and step != 0:
+        return len(range(*slice(start, stop, step).indices(size)))
     return None
 
 

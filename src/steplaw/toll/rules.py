@@ -106,6 +106,9 @@ def _builtin(function: Any, args: tuple[Any, ...]) -> Found | Quiet | None:
     owner = function.__self__
     if owner is None or type(owner) is types.ModuleType:
         return None
+    rule = _BY_METHOD.get((type(owner), function.__name__))
+    if rule is not None:
+        return (rule, owner, args, True) if _fits(rule, args) else QUIET_NOW
     holder = owner if type in kinds.bases(type(owner)) else type(owner)
     found = _method(holder, function.__name__)
     if isinstance(found, Rule):

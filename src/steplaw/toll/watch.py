@@ -4,11 +4,14 @@ from __future__ import annotations
 
 import operator
 import types
+from itertools import compress, repeat
+from operator import length_hint
+from sys import maxsize
 from typing import Any
 
 from steplaw.toll import arrays, kinds, operands
 from steplaw.toll.hidden import hidden
-from steplaw.toll.ledger import LEDGER, Place
+from steplaw.toll.ledger import LEDGER, NOTHING, Place
 from steplaw.toll.rules import QUIET, Quiet, call_of, look_up
 
 _PYTHON = frozenset({types.FunctionType, types.MethodType})
@@ -25,10 +28,11 @@ def consider(function: Any, args: tuple[Any, ...], place: Place) -> bool:
     if isinstance(found, Quiet):
         if found is QUIET:
             if not place.name:
-                place.quiet = function
+                place.settle(function)
             elif type(function) in _PYTHON:
                 place.quiet = type(function)
         return False
+    place.found = found, function
     return True
 
 
@@ -60,7 +64,13 @@ def spread(args: Any, kwargs: dict[str, Any] | None, function: Any, place: Place
 
 @hidden
 def _by_rule(function: Any, args: tuple[Any, ...], kwargs: dict[str, Any], place: Place) -> Any:
-    found = look_up(function, args)
+    known = place.found
+    place.found = None
+    # Another thread may have come by meanwhile.
+    if known is not None and known[1] is function and not kwargs:
+        found = known[0]
+    else:
+        found = look_up(function, args)
     if found is None or isinstance(found, Quiet):
         return function(*args, **kwargs)
     call = call_of(found, function, kwargs)
@@ -124,7 +134,7 @@ def contains(item: Any, container: Any, place: Place) -> bool:
     elif arrays.elements(container):
         LEDGER.charge(place, "in array", container.size, False)
     else:
-        place.quiet = kind
+        place.settle(kind)
     found: bool = operator.contains(container, item)
     return found is bool(place.argument == 0)
 
@@ -132,15 +142,19 @@ def contains(item: Any, container: Any, place: Place) -> bool:
 @hidden
 def _scan(item: Any, container: Any, place: Place) -> bool:
     kind = type(container)
-    visits, found = kinds.length(container) or 0, False
+    probe = repeat(True, maxsize)
+    size = kinds.length(container)
+    searched = compress(container, probe) if size is None else container
+    visits, found = size or 0, False
     try:
         # The same comparisons in the same order as `in` makes them (CPython's list_contains and
         # _PySequence_IterSearch), with the place at the end.
-        visits = operator.indexOf(container, item) + 1
+        visits = operator.indexOf(searched, item) + 1
         found = True
     except ValueError as error:
         if error.args != (_ITERATED,):
             raise
+        visits = maxsize - length_hint(probe) if size is None else size
     finally:
         LEDGER.charge(place, f"in {kind.__name__}", visits)
     return found is bool(place.argument == 0)
@@ -149,35 +163,77 @@ def _scan(item: Any, container: Any, place: Place) -> bool:
 @hidden
 def binary(left: Any, right: Any, place: Place) -> None:
     """Charge an operator by its operands."""
+    kind = type(left)
+    if kind is int and type(right) is int:
+        charge = operands.whole(place.argument, left, right)
+        if charge is not None:
+            _met_long(place)
+            LEDGER.charge(place, *charge)
+        elif operands.makes_long(place.argument):
+            place.whole = not place.long
+        elif not LEDGER.long_met:
+            LEDGER.short.append(place)
+            place.settle(int)
+        return
     charge = operands.binary(place.argument, left, right)
     if charge is not None:
         LEDGER.charge(place, *charge)
-    elif type(left) is not int or not operands.makes_long(place.argument):
-        place.quiet = type(left)
+    elif kind is not int:
+        place.settle(kind)
+
+
+def _met_long(place: Place) -> None:
+    """Look at whole numbers everywhere from now on: some have got long."""
+    place.long, place.whole = True, False
+    if not LEDGER.long_met:
+        LEDGER.long_met = True
+        for other in LEDGER.short:
+            other.quiet = other.other = NOTHING
+        LEDGER.short.clear()
+
+
+@hidden
+def result(value: Any, place: Place) -> None:
+    """Charge an operator by its result, where its operands were taken for short whole numbers."""
+    kind = type(value)
+    if kind is int:
+        long = kinds.digits(value)
+        if long > kinds.SHORT_DIGITS:
+            _met_long(place)
+        if long > 2 * kinds.SHORT_DIGITS:
+            # No product of short numbers is as long: an operand came from elsewhere, already long.
+            LEDGER.charge(place, f"long {operands.sign(place.argument)}", long * long, False)
+        return
+    place.whole = False
+    if kind in kinds.SEQUENCES:
+        name = f"{kind.__name__} {operands.sign(place.argument)}"
+        LEDGER.charge(place, name, len(value), place.argument < operands.IN_PLACE)
 
 
 @hidden
 def compare(left: Any, right: Any, place: Place) -> None:
     """Charge a comparison of sequences, at most."""
     kind = type(left)
-    if kind in kinds.SCALARS:
-        place.quiet = kind
-        return
     charge = operands.comparison(place.argument, left, right)
     if charge is not None:
         LEDGER.charge(place, *charge)
-    elif kinds.length(left) is None and not arrays.elements(left):
-        place.quiet = kind
+    elif kind in kinds.SCALARS or (kinds.length(left) is None and not arrays.elements(left)):
+        place.settle(kind)
 
 
 @hidden
 def part(container: Any, start: Any, stop: Any, step: Any, place: Place) -> None:
     """Charge a slice that is read."""
+    if type(container) in kinds.COPIED_BY_SLICES:
+        visits = operands.slice_length(len(container), start, stop, step)
+        if visits is None:
+            LEDGER.charge(place, "slice", len(container), False)
+        else:
+            LEDGER.charge(place, "slice", visits)
+        return
     size = kinds.length(container)
     if size is not None and type(container) is not memoryview and type(container) is not range:
-        visits = operands.slice_length(size, start, stop, step)
-        exact = visits is not None
-        LEDGER.charge(place, "slice", size if visits is None else visits, exact)
+        LEDGER.charge(place, "slice", size, False)
 
 
 @hidden
@@ -195,7 +251,7 @@ def delete(container: Any, key: Any, place: Place) -> None:
     if charge is not None:
         LEDGER.charge(place, "deleted", *charge)
     elif kinds.length(container) is None or type(container) is dict:
-        place.quiet = type(container)
+        place.settle(type(container))
 
 
 @hidden
