@@ -151,7 +151,9 @@ def run(study: Study, report: Report | None = None) -> AuditRecord:
         repeat = _run_again(hosts.again, swept)
         _keep_what_repeats(hosts, repeat)
         forms = Forms(plan, swept)
-        findings = Findings(swept, study.figure, about["loaded"], repeat, forms=forms)
+        findings = Findings(
+            swept, study.figure, about["loaded"], repeat, forms=forms, own=study.costs
+        )
         timed = _hold_against_clock(study, hosts.timing, swept, report)
     return AuditRecord(_record(study, about, swept, findings, repeat, timed))
 

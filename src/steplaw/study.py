@@ -9,7 +9,7 @@ from typing import Any
 
 from steplaw import feed as feeds
 from steplaw import subject as subjects
-from steplaw.costs import WHOLE
+from steplaw.costs import WHOLE, Costs, read_costs
 from steplaw.errors import CallError
 from steplaw.feed import FeedSpec
 from steplaw.host.limits import Limits
@@ -38,7 +38,9 @@ class Study:
     draws : int
         Inputs at each size where they differ from draw to draw.
     figure : str
-        ``steps``, an operation class, or ``line:N``.
+        ``steps``, an operation class, ``line:N``, or ``cost`` by the team's own weights.
+    costs : Costs, optional
+        These weights.
     clock : bool
         Whether the clock check is made.
     limits : Limits
@@ -61,6 +63,7 @@ class Study:
     asked: tuple[Mapping[str, int], ...] = ()
     draws: int = DRAWS
     figure: str = "steps"
+    costs: Costs | None = None
     clock: bool = True
     limits: Limits = field(default_factory=Limits)
     again: str = ""
@@ -84,6 +87,7 @@ def make_study(
     only_sizes: bool = False,
     draws: int = DRAWS,
     figure: str = "steps",
+    costs: str | None = None,
     clock: bool = True,
     limit_seconds: float = 60.0,
     limit_memory: int = 4096,
@@ -110,6 +114,8 @@ def make_study(
         Inputs at each size where they differ from draw to draw.
     figure : str
         The figure that the study is about.
+    costs : str, optional
+        A TOML file of weights; the study is about the figure `cost` that they make.
     clock : bool
         Whether to hold the law against the clock.
     limit_seconds : float
@@ -138,7 +144,13 @@ def make_study(
         raise CallError("a limit must be above 0", "as in --limit-seconds 10 --limit-memory 2048")
     if processes is not None and processes < 1:
         raise CallError(f"--processes {processes} makes no run", "give 1 or more")
-    check_figure(figure)
+    weights = None if costs is None else read_costs(costs)
+    if weights is None:
+        check_figure(figure)
+    elif figure == "steps":
+        figure = "cost"
+    else:
+        raise CallError("--costs and --figure cannot be given together", "leave one of them out")
     if isinstance(sizes, int):
         sizes = [sizes]
     asked = plan(sizes, True).points if _names_numbers(sizes) else ()
@@ -150,6 +162,7 @@ def make_study(
         asked=tuple(asked),
         draws=draws,
         figure=figure,
+        costs=weights,
         clock=clock,
         limits=Limits(float(limit_seconds), int(limit_memory)),
         again=again or _command(ref, spec, asked, only_sizes, draws, figure),

@@ -40,6 +40,7 @@ from steplaw.wording import listing
     metavar="NAME",
     help="steps, an operation class such as comparison, or line:N.",
 )
+@click.option("--costs", metavar="FILE.toml", help="Weights: the figure is the cost they make.")
 @click.option("--clock/--no-clock", default=True, help="Hold the law against the clock, or not.")
 @click.option(
     "--limit-seconds",
