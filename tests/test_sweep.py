@@ -11,7 +11,7 @@ from steplaw.host.limits import Failure
 from steplaw.host.runner import Run, RunFailed
 from steplaw.repeat import unequal
 from steplaw.sizes import plan
-from steplaw.sweep import STEPS_A_RUN, Sweep, sweep
+from steplaw.sweep import STEPS_A_RUN, Sweep, extend, larger, sweep
 from steplaw.tally.model import LineCount, Tally
 
 
@@ -135,3 +135,19 @@ def test_all_inputs_are_compared_by_how_many_gave_what() -> None:
     assert unequal(at, first, [run(at, 5, times=2), run(at, 9, times=1)]) == []
     found = unequal(at, first, [run(at, 5, times=3)])
     assert found[0]["counts"] == [19, 15]
+
+
+def test_larger_sizes_are_offered_as_far_as_steps_allow() -> None:
+    quick = Sweep(("n",), {(k,): [run({"n": k}, 10 * k)] for k in range(1, 33)})
+    assert larger(quick, 5) == [64, 128]
+    slow = Sweep(("n",), {(k,): [run({"n": k}, 10_000_000 * k)] for k in range(1, 17)})
+    assert larger(slow, 5) == []
+
+
+def test_a_sweep_is_extended_in_order_of_size() -> None:
+    host = Host(lambda n, draw: n * n)
+    swept = Sweep(("n",), {(k,): [run({"n": k}, k * k)] for k in (1, 2, 8)}, left_out=[(16,)])
+    extend(host, swept, [4, 16, 2], 5)
+    assert list(swept.runs) == [(1,), (2,), (4,), (8,), (16,)]
+    assert host.asked == [(4, 0), (16, 0)]
+    assert swept.left_out == []

@@ -314,6 +314,18 @@ class Findings:
         return round(float(self._at_largest(observations) / self._total), 4)
 
 
+def is_undecided(swept: Sweep) -> bool:
+    """Whether several orders of growth fit the steps equally well.
+
+    Parameters
+    ----------
+    swept : Sweep
+        The runs.
+    """
+    law = find_law(series.of(swept, _steps), swept.names)
+    return "undecided" in (law.details or {})
+
+
 def _share_of(entry: Mapping[str, Any]) -> float:
     return float(entry["share"])
 

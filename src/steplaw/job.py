@@ -11,7 +11,7 @@ from typing import Any
 
 from steplaw.errors import CallError
 from steplaw.feed import size_text
-from steplaw.findings import Findings
+from steplaw.findings import Findings, is_undecided
 from steplaw.host.asking import Asker
 from steplaw.host.crew import Crew, Crewed
 from steplaw.host.limits import Failure
@@ -21,7 +21,7 @@ from steplaw.repeat import Repeat, run_again
 from steplaw.store import Kept, machine, open_store
 from steplaw.structure import Forms, Plan, plan_for
 from steplaw.study import Study, make_study
-from steplaw.sweep import Sweep, extend, interrupted, sweep
+from steplaw.sweep import Sweep, extend, interrupted, larger, sweep
 from steplaw.timed import hold_against_clock, points_to_time, undecided
 from steplaw.wording import listing
 
@@ -32,6 +32,9 @@ CAUTIONS = (
     "None of this is a worst-case execution time for a safety-related deadline; that belongs to "
     "the qualified process that the applicable standard asks for.",
 )
+
+#: Times that the largest size may be doubled to settle the choice between laws.
+ROUNDS_TO_DECIDE = 2
 
 Report = Callable[[str, Mapping[str, int], int, int | None], None]
 
@@ -148,6 +151,7 @@ def run(study: Study, report: Report | None = None) -> AuditRecord:
         plan = plan_for(study.subject)
         swept = _sweep(study, hosts.counting, report)
         _run_what_proofs_want(study, hosts.counting, plan, swept, report)
+        _run_what_a_choice_wants(study, hosts.counting, swept, report)
         repeat = _run_again(hosts.again, swept)
         _keep_what_repeats(hosts, repeat)
         forms = Forms(plan, swept)
@@ -228,6 +232,24 @@ def _run_what_proofs_want(
         missing = Forms(plan, swept).missing()
         if missing:
             extend(runner, swept, missing, study.draws, _counting(report))
+    except KeyboardInterrupt:
+        swept.stopped = interrupted(swept.at(max(swept.runs)))
+
+
+def _run_what_a_choice_wants(
+    study: Study, runner: Asker, swept: Sweep, report: Report | None
+) -> None:
+    """Add larger sizes where orders of growth fit alike at those that were run."""
+    if study.only_sizes or swept.whole or len(swept.names) > 1 or swept.stopped is not None:
+        return
+    try:
+        for _ in range(ROUNDS_TO_DECIDE):
+            if not swept.runs or not is_undecided(swept):
+                return
+            more = larger(swept, study.draws)
+            if not more:
+                return
+            extend(runner, swept, more[:1], study.draws, _counting(report))
     except KeyboardInterrupt:
         swept.stopped = interrupted(swept.at(max(swept.runs)))
 

@@ -20,6 +20,8 @@ from steplaw.sizes import SizePlan
 STEPS_A_RUN = 20_000_000
 STEPS_IN_ALL = 100_000_000
 INPUTS_A_SIZE = 50_000
+#: Predicted steps that may be spent on larger sizes where the choice between laws is not settled.
+STEPS_TO_DECIDE = 200_000_000
 #: Predicted steps from which on a run is worth being begun ahead of time.
 STEPS_AHEAD = 1_000_000
 #: Sizes from which on the time left is told by the law found so far.
@@ -159,7 +161,7 @@ class _Course:
 def extend(
     runner: Asker, swept: Sweep, sizes: Sequence[int], draws: int, report: Report | None = None
 ) -> None:
-    """Run further sizes of a sweep over one size, below its largest.
+    """Run further sizes of a sweep over one size.
 
     Parameters
     ----------
@@ -175,14 +177,39 @@ def extend(
         As for `sweep`.
     """
     barred = {tuple(f.at.values()) for f in swept.passed_over}
-    largest = max(swept.runs)
     points = [(n,) for n in sizes if (n,) not in swept.runs and (n,) not in barred]
-    below = tuple(swept.at(p) for p in points if p < largest)
-    plan = SizePlan(swept.names, below, (), given=False)
-    more = sweep(runner, plan, draws=draws, every=swept.whole, report=report)
+    plan = SizePlan(swept.names, tuple(swept.at(p) for p in points), (), given=False)
+    more = sweep(runner, plan, draws=draws, every=swept.whole, asked=plan.points, report=report)
+    swept.left_out = [p for p in swept.left_out if p not in more.runs]
     swept.runs = dict(sorted({**swept.runs, **more.runs}.items()))
     swept.varies |= more.varies
     swept.stopped = swept.stopped or more.stopped
+
+
+def larger(swept: Sweep, draws: int) -> list[int]:
+    """Give the sizes above those of a sweep that can be run within its means.
+
+    Parameters
+    ----------
+    swept : Sweep
+        The runs, over one size.
+    draws : int
+        Inputs at each size where they differ from draw to draw.
+
+    Returns
+    -------
+    list of int
+        Two at most, whose predicted steps are at most `STEPS_TO_DECIDE` in all.
+    """
+    last = max(swept.runs)[0]
+    spent, found = 0.0, []
+    for n in (2 * last, 4 * last):
+        steps = (_predict(swept, (n,)) or 0.0) * _predicted_inputs(swept, (n,), draws)
+        spent += steps
+        if not steps or spent > STEPS_TO_DECIDE:
+            break
+        found.append(n)
+    return found
 
 
 def _expect(runner: Asker, result: Sweep, todo: Sequence[Point], draws: int) -> None:

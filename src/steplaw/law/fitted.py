@@ -135,11 +135,9 @@ def fit(observations: Sequence[Observation], name: str, orders: Sequence[Vector]
             others = ", ".join(x for t, x in zip(tied, texts, strict=True) if t is not known[0])
             why = f"{others} would fit as well; taken is the growth that exact counts here have"
             return replace(law, note=f"{law.note}; {why}" if law.note else why)
-        return _open(
-            data, name,
-            "several orders of growth fit equally well: " + ", ".join(texts)
-            + "; larger sizes would tell them apart",
-        )  # fmt: skip
+        alike = f"several orders of growth fit equally well: {', '.join(texts)}"
+        law = _open(data, name, f"{alike}; larger sizes would tell them apart")
+        return replace(law, details={**(law.details or {}), "undecided": texts})
     return _law(data, chosen, nearby, name)
 
 

@@ -204,11 +204,12 @@ class Forms:
         if self.why_not or len(self._sizes) != 1:
             return []
         wanted: set[int] = set()
+        largest = max(self._run)[0]
         for key in self._counts:
             shape, _ = self.shape(*key)
             if shape is not None:
                 more = [n for n in shape.sizes(FURTHER) if (n,) not in self._run]
-                if len(more) <= most:
+                if len(more) <= most and (not more or more[-1] < largest):
                     wanted.update(more)
         return sorted(wanted)[:most]
 
