@@ -74,7 +74,8 @@ def test_every_plot_is_there(chromium: Chrome, tmp_path: Path) -> None:
     assert [kind for kind, _, _ in heights] == ["growth", "shares", "shares"]
     assert all(height > 100 and marks > 8 for _, height, marks in heights)
     bands = "return document.querySelectorAll('svg.shares path.band').length"
-    assert chromium.execute_script(bands) == 4 + 6
+    # Four terms; six parts by lines with a band each, and one for what is left.
+    assert chromium.execute_script(bands) == 4 + 7
     assert chromium.execute_script("return document.querySelectorAll('circle.count').length") > 10
     assert chromium.execute_script("return document.querySelectorAll('path.time').length") > 4
 

@@ -67,3 +67,16 @@ def test_stops_rise_and_hold_both_ends() -> None:
     found = ways.stops(3, 12_345)
     assert found == sorted(set(found)) and (found[0], found[-1]) == (3, 12_345)
     assert set(range(3, 21)) <= set(found) and len(found) < 60
+
+
+def test_a_line_has_its_share_of_all_steps_and_the_rest_never_leads() -> None:
+    record = sample_records.cubic()
+    for line in record["lines"]:
+        line["steps"] = sample_records.law("n") if line["line"] in (44, 47) else None
+    (along,) = ways.ways(record)
+    shares, _ = line_shares(record, along)
+    assert shares is not None and shares.labels[-1] == "elsewhere"
+    for size, one, rest in zip(shares.sizes, shares.rows[0], shares.rows[-1], strict=True):
+        assert abs(one - size / sample_records.steps_of(size)) < 1e-9
+        assert abs(one * 2 + rest - 1) < 1e-9
+    assert {part for _, part in shares.bands} == {0}

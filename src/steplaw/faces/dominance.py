@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
+from fractions import Fraction
 from typing import Any
 
 from steplaw.faces import along as ways
@@ -19,12 +20,17 @@ LEAST_REACH = 1000
 MOST_TOLD = 5
 
 
+#: What the steps of no line shown are called; it has a share, and never leads.
+ELSEWHERE = "elsewhere"
+Read = Callable[[Mapping[str, int]], Number]
+
+
 @dataclass(frozen=True, slots=True)
 class Part:
     """A term or a line: what it is called and its value at a size."""
 
     label: str
-    read: Callable[[Mapping[str, int]], Number]
+    read: Read
 
 
 @dataclass(frozen=True, slots=True)
@@ -104,7 +110,25 @@ def line_shares(record: Json, along: Along) -> tuple[Shares | None, list[int]]:
         else:
             parts.append(Part(f"line {line['line']}", read))
             start = max(start, ways.starts_at(line["steps"], along))
-    return (_shares(parts, along, start) if len(parts) > 1 else None), left_out
+    if len(parts) < 2:
+        return None, left_out
+    whole = ways.reader(record["laws"].get("steps"), names)
+    if whole is None:
+        return _shares(parts, along, start), left_out
+    start = max(start, ways.starts_at(record["laws"]["steps"], along))
+    return _shares([*parts, _rest(parts, whole)], along, start), left_out
+
+
+def _rest(parts: Sequence[Part], whole: Read) -> Part:
+    """Give the steps of no line shown: other files, instructions without a line, open laws."""
+
+    def read(at: Mapping[str, int]) -> Number:
+        rest = whole(at)
+        for part in parts:
+            rest = rest - part.read(at)
+        return max(rest, Fraction(0))
+
+    return Part(ELSEWHERE, read)
 
 
 def bands(shares: Shares) -> list[tuple[str, str]]:
@@ -191,7 +215,7 @@ def _column(parts: Sequence[Part], along: Along, size: int) -> list[float] | Non
 def _bands(
     parts: Sequence[Part], along: Along, sizes: Sequence[int], columns: Sequence[Sequence[float]]
 ) -> tuple[tuple[int, int], ...]:
-    tops = [_top(column) for column in columns]
+    tops = [_top(parts, column) for column in columns]
     out = [(sizes[0], tops[0])]
     for place in range(1, len(sizes)):
         if tops[place] != tops[place - 1]:
@@ -205,12 +229,13 @@ def _turn(parts: Sequence[Part], along: Along, low: int, high: int) -> int:
     while high - low > 1 and last is not None:
         middle = (low + high) // 2
         column = _column(parts, along, middle)
-        if column is not None and _top(column) == _top(last):
+        if column is not None and _top(parts, column) == _top(parts, last):
             high = middle
         else:
             low = middle
     return high
 
 
-def _top(column: Sequence[float]) -> int:
-    return max(range(len(column)), key=lambda part: column[part])
+def _top(parts: Sequence[Part], column: Sequence[float]) -> int:
+    lines = [place for place, part in enumerate(parts) if part.label != ELSEWHERE]
+    return max(lines, key=lambda place: column[place])
