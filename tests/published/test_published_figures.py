@@ -1,10 +1,11 @@
-"""Figures published elsewhere, reproduced by audits of ordinary Python code; see `rows`.
+"""Figures published elsewhere, reproduced by audits of ordinary Python code; see `figures`.
 
-`python tests/published/test_published.py` prints the table of docs/published-figures.md.
+`python tests/published/test_published_figures.py` prints the table of published figures.
 """
 
 from __future__ import annotations
 
+import math
 import sys
 from pathlib import Path
 from typing import Any
@@ -14,11 +15,11 @@ import sympy
 
 sys.path.insert(0, str(Path(__file__).parent))
 
-from rows import ROWS, Row
+from figures import ROWS, Row
 
 import steplaw
 
-SUBJECTS = Path(__file__).parent / "subjects.py"
+SUBJECTS = Path(__file__).parent / "algorithms.py"
 n = sympy.Symbol("n")
 NAMES = {"fibonacci": sympy.fibonacci}
 
@@ -80,6 +81,40 @@ def test_no_order_of_few_keys_takes_merge_sort_more_comparisons() -> None:
     expected = sympy.sympify(row.expected)
     for v in record.figure["values"]:
         assert v["most"] == expected.subs(n, v["at"]["n"])
+
+
+def audited_line(function: str, comment: str, **settings: Any) -> Any:
+    row = Row("", "", function, comment, "")
+    return steplaw.audit(
+        f"{SUBJECTS}:{function}", figure=f"line:{line_of(row)}", clock=False, **settings
+    )
+
+
+def test_euclids_divisions_are_at_most_five_times_the_digits_of_the_smaller_number() -> None:
+    # Lamé 1844; Knuth, The Art of Computer Programming, vol. 2, 4.5.3: a > b >= 1.
+    record = audited_line(
+        "euclid",
+        "division",
+        every="(args(a, n) for a in range(n + 1, 2 * n + 1))",
+        sizes=[1, 2, 5, 8, 13, 21, 34, 55, 89, 90],
+        only_sizes=True,
+    )
+    for v in record.figure["values"]:
+        assert v["most"] <= 5 * len(str(v["at"]["n"]))
+    most = {v["at"]["n"]: v["most"] for v in record.figure["values"]}
+    assert most[8] == 5  # the bound is met: 8 and 13 are Fibonacci numbers
+
+
+def test_the_sieves_crossings_out_follow_mertens() -> None:
+    # n times the sum of 1/p over the primes up to n, which is ln ln n + 0.2615 and a little
+    # (Hardy & Wright, ch. 22; Mertens 1874). Each crossing-out of n//p rounds down: tolerance 0.1.
+    record = audited_line(
+        "sieve", "crossing-out", feed="n", sizes=[300, 1000, 3000, 10000], only_sizes=True
+    )
+    for v in record.figure["values"]:
+        n_ = v["at"]["n"]
+        assert abs(v["mean"] / n_ - math.log(math.log(n_)) - 0.2615) < 0.1
+    assert record.figure.law.grade != "proved"
 
 
 def test_there_are_enough_rows_each_with_its_source() -> None:

@@ -22,7 +22,7 @@ class Row:
     name, source : str
         What is counted, and who says so.
     function, line : str
-        The function of `subjects`, and the comment of the line whose frequency it is.
+        The function of `algorithms`, and the comment of the line whose frequency it is.
     expected : str
         The figure, read by sympy; `n` is the size.
     reads : {"law", "most", "least", "variance"}
