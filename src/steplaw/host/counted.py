@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import gc
 import random
 import sys
 from collections.abc import Iterator, Mapping
@@ -15,6 +16,7 @@ from steplaw.host.measured import measured
 from steplaw.host.watch import Watch, change
 from steplaw.subject import Subject
 from steplaw.tally.assembled import tally_of
+from steplaw.tally.collector import YOUNG, Undisturbed
 from steplaw.tally.install import Installation
 from steplaw.tally.registry import Registry
 from steplaw.tally.snapshot import CodeCounts, Snapshot, counts_between
@@ -41,6 +43,7 @@ class CountedSubject:
         self.registry = Registry(watched=True)
         Installation(self.registry).enter()
         self.watch = Watch(self.registry)
+        gc.collect()
         self._loaded = Snapshot(self.registry)
 
     def reached(self) -> list[CodeType]:
@@ -73,17 +76,18 @@ class CountedSubject:
             return
         self._fresh()
         sizes = measured(self.subject.function, made.args, made.kwargs)
-        before = Snapshot(self.registry)
-        LEDGER.take()
-        try:
-            result = subjects.call(self.subject, made.args, made.kwargs)
-        except (SystemExit, MemoryError):
-            raise
-        except BaseException as error:
-            yield failure("raised", _raised(error, self.subject))
-            return
-        taken = LEDGER.take()
-        codes = list(counts_between(before, Snapshot(self.registry)))
+        with Undisturbed(YOUNG):
+            before = Snapshot(self.registry)
+            LEDGER.take()
+            try:
+                result = subjects.call(self.subject, made.args, made.kwargs)
+            except (SystemExit, MemoryError):
+                raise
+            except BaseException as error:
+                yield failure("raised", _raised(error, self.subject))
+                return
+            taken = LEDGER.take()
+            codes = list(counts_between(before, Snapshot(self.registry)))
         reply = self._reply(codes, taken)
         reply["random"] = made.random
         reply["measured"] = sizes
@@ -122,17 +126,18 @@ class CountedSubject:
             text = _shown(made)
             sizes = measured(self.subject.function, made.args, made.kwargs)
             self._fresh()
-            before = self.watch.readings()
-            LEDGER.take()
-            try:
-                subjects.call(self.subject, made.args, made.kwargs)
-            except (SystemExit, MemoryError):
-                raise
-            except BaseException as error:
-                yield failure("raised", f"{_raised(error, self.subject)} on input {text}")
-                return
-            taken = LEDGER.take()
-            after = self.watch.readings()
+            with Undisturbed(YOUNG):
+                before = self.watch.readings()
+                LEDGER.take()
+                try:
+                    subjects.call(self.subject, made.args, made.kwargs)
+                except (SystemExit, MemoryError):
+                    raise
+                except BaseException as error:
+                    yield failure("raised", f"{_raised(error, self.subject)} on input {text}")
+                    return
+                taken = LEDGER.take()
+                after = self.watch.readings()
             key = change(before, after), taken
             seen = distinct.setdefault(key, [0, number, text, sizes, before, after])
             seen[0] += 1

@@ -7,6 +7,7 @@ from types import TracebackType
 from typing import Any
 
 from steplaw.tally.assembled import tally_of
+from steplaw.tally.collector import Undisturbed
 from steplaw.tally.install import Installation
 from steplaw.tally.model import Tally
 from steplaw.tally.registry import Registry
@@ -90,6 +91,8 @@ class counting:
     def __enter__(self) -> Counter:
         self._counter = Counter()
         self._installation.enter()
+        self._undisturbed = Undisturbed()
+        self._undisturbed.__enter__()
         self._waiting = Waiting(self._registry)
         LEDGER.take()
         self._before = Snapshot(self._registry)
@@ -104,6 +107,7 @@ class counting:
         if self._registry.watched:
             self._counter.taken = LEDGER.take()
         after = Snapshot(self._registry)
+        self._undisturbed.__exit__(None, None, None)
         self._installation.leave()
         self._counter.notes = [
             *self._before.unsettled,
