@@ -220,8 +220,53 @@ class DeriveRecord(Record):
         return "\n".join(_printable(row) for row in rows)
 
 
+class WorstRecord(Record):
+    """The worst case of a subject, a `steplaw.worst/1` record."""
+
+    schema_name = "steplaw.worst/1"
+    schema_file = "worst-1.schema.json"
+
+    def __repr__(self) -> str:
+        best = self["best"]
+        rows = [f"worst case of {self['subject']['name']}: {best['value']} at n={best['at']}"]
+        if self["family"] is not None:
+            law = self["family"]["law"]
+            rows.append(f"  at least {law['formula']} ({law['grade']}): {self['family']['text']}")
+        return "\n".join(_printable(row) for row in rows)
+
+
+class LifeRecord(Record):
+    """The cost of operations over a life, a `steplaw.life/1` record."""
+
+    schema_name = "steplaw.life/1"
+    schema_file = "life-1.schema.json"
+
+
+class TypicalRecord(Record):
+    """The distribution of a figure by size, a `steplaw.typical/1` record."""
+
+    schema_name = "steplaw.typical/1"
+    schema_file = "typical-1.schema.json"
+
+
+class SpaceRecord(Record):
+    """What a subject holds at its peak, a `steplaw.space/1` record."""
+
+    schema_name = "steplaw.space/1"
+    schema_file = "space-1.schema.json"
+
+
 RECORDS: dict[str, type[Record]] = {
-    kind.schema_name: kind for kind in (AuditRecord, TallyRecord, DeriveRecord)
+    kind.schema_name: kind
+    for kind in (
+        AuditRecord,
+        TallyRecord,
+        DeriveRecord,
+        WorstRecord,
+        LifeRecord,
+        TypicalRecord,
+        SpaceRecord,
+    )
 }
 
 

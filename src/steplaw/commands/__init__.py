@@ -13,6 +13,10 @@ from steplaw.errors import SteplawError
 COMMANDS = {
     "audit": "Find the law that a function's step count follows.",
     "derive": "Work out from the source how often each line runs.",
+    "worst": "Search for the input of a size that costs most.",
+    "typical": "Find how a figure is spread over its inputs.",
+    "life": "Count each operation on one structure, and their mean.",
+    "space": "Find what is held at the peak: elements and memory.",
     "tally": "Run a program under probes and count its steps.",
     "show": "Show a stored record.",
     "store": "List, prune or export the finished runs that are kept.",

@@ -95,14 +95,23 @@ def show(record: Record, *, error: bool = False) -> None:
 
     from steplaw.faces.terminal import show as show_sheet
     from steplaw.faces.terminal_derive import show_derivation
+    from steplaw.faces.terminal_life import show_life, show_space, show_typical
     from steplaw.faces.terminal_tally import show_tally
+    from steplaw.faces.terminal_worst import show_worst
 
     class Screen(Console):
         def on_broken_pipe(self) -> None:
             self.quiet = True
             nobody_reads(self.file)
 
-    faces = {"steplaw.tally/1": show_tally, "steplaw.derive/1": show_derivation}
+    faces = {
+        "steplaw.tally/1": show_tally,
+        "steplaw.derive/1": show_derivation,
+        "steplaw.worst/1": show_worst,
+        "steplaw.life/1": show_life,
+        "steplaw.typical/1": show_typical,
+        "steplaw.space/1": show_space,
+    }
     faces.get(record["schema"], show_sheet)(record, Screen(stderr=error, highlight=False))
 
 

@@ -16,6 +16,7 @@ from typing import Any
 
 from steplaw.errors import SteplawError
 from steplaw.feed import Feed, FeedSpec, bind
+from steplaw.host.batch import SEARCHES
 from steplaw.host.counted import CountedSubject, new_modules
 from steplaw.host.fork import Reply, failure, forked_stream, silence
 from steplaw.host.limits import Limits
@@ -73,6 +74,8 @@ class Host:
         assert self.counted is not None
         if request["do"] == "every":
             return self._every(self.counted, request["at"])
+        if request["do"] in SEARCHES:
+            return self._searched(self.counted, request)
         counted, at, draw = self.counted, request["at"], request["draw"]
         feed = self._sent(request) if "input" in request else self.feed
         return forked_stream(lambda: self._telling(counted.draw(at, draw, feed)), self.limits)
@@ -88,6 +91,22 @@ class Host:
                     yield reply
             if not widened:
                 return
+
+    def _searched(self, counted: CountedSubject, request: dict[str, Any]) -> Iterator[Reply]:
+        """Answer what a search asks; ``again`` says that all replies before it are void."""
+        seconds = min(self.limits.seconds, request.get("seconds", self.limits.seconds))
+        limits = Limits(seconds, self.limits.megabytes)
+        while True:
+            widened = False
+            for reply in forked_stream(lambda: SEARCHES[request["do"]](counted, request), limits):
+                if "widen" in reply:
+                    widened = True
+                    counted.watch.widen(reply["widen"])
+                elif not widened:
+                    yield reply
+            if not widened:
+                return
+            yield {"again": True}
 
     def _telling(self, work: Iterator[Reply]) -> Iterator[Reply]:
         """Add to the replies of a run what it depends on, before the one that says it failed."""

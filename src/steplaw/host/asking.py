@@ -220,7 +220,7 @@ class Asker(ABC):
         except FeedError as error:
             raise RunFailed(Failure("feed", str(error), dict(at), draw)) from None
         run = None
-        for reply in self._answers(_count(at, draw, sent), at, draw):
+        for reply in self.replies(_count(at, draw, sent), at, draw):
             run = _run(at, draw, reply)
         if run is None:
             raise RunFailed(Failure("crash", "ended without a tally", at, draw))
@@ -242,7 +242,7 @@ class Asker(ABC):
             If the subject failed or ran past a limit.
         """
         runs = []
-        for reply in self._answers(_every(at), at, 0):
+        for reply in self.replies(_every(at), at, 0):
             if "progress" in reply:
                 if progress is not None:
                     progress(reply["progress"])
@@ -276,11 +276,12 @@ class Asker(ABC):
         if self._sender is not None:
             request["inputs"] = [[self._sender.make(p, d)[0] for d in range(draws)] for p in points]
         timings: list[dict[str, Any]] = []
-        for reply in self._answers(request, points[-1], 0):
+        for reply in self.replies(request, points[-1], 0):
             timings = reply["timings"]
         return timings
 
-    def _answers(self, request: Mapping[str, Any], at: Size, draw: int) -> Iterator[Reply]:
+    def replies(self, request: Mapping[str, Any], at: Size, draw: int) -> Iterator[Reply]:
+        """Give what is replied to a request; an end that is not well raises `RunFailed`."""
         self.load()
         for reply in self.answers(request):
             if "failed" in _sound(reply):

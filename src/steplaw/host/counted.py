@@ -74,7 +74,7 @@ class CountedSubject:
         except FeedError as error:
             yield failure("feed", str(error))
             return
-        self._fresh()
+        self.fresh()
         sizes = measured(self.subject.function, made.args, made.kwargs)
         with Undisturbed(YOUNG):
             before = Snapshot(self.registry)
@@ -125,7 +125,7 @@ class CountedSubject:
             number, made = one
             text = _shown(made)
             sizes = measured(self.subject.function, made.args, made.kwargs)
-            self._fresh()
+            self.fresh()
             with Undisturbed(YOUNG):
                 before = self.watch.readings()
                 LEDGER.take()
@@ -160,7 +160,7 @@ class CountedSubject:
             reply.update(times=times, first=number, input=text, measured=sizes)
             yield reply
 
-    def _fresh(self) -> None:
+    def fresh(self) -> None:
         """Forget kept results, and let the subject's own randomness be its own.
 
         The feed has seeded the module `random`; a subject that draws from it would otherwise get
