@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import ast
+import re
 import inspect
 from fractions import Fraction
 from pathlib import Path
@@ -120,7 +121,9 @@ def test_a_bad_hash_is_found() -> None:
     record = searched("store_bookings", 64)
     assert record["family"]["law"]["grade"] == "exact"
     assert order_of_growth(record) == 2
-    numbers = ast.literal_eval(record["best"]["input"])
+    # A long input is shown shortened: its last number may be cut.
+    numbers = [int(x) for x in re.findall(r"\d+", record["best"]["input"])[:-1]]
+    assert len(numbers) > 30
     assert len({x & 255 for x in numbers}) == 1
 
 
