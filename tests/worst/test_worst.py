@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 import ast
-import re
 import inspect
+import re
 from fractions import Fraction
 from pathlib import Path
 from typing import Any
