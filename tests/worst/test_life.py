@@ -35,6 +35,9 @@ def test_binary_counter_flips_two_bits_an_increment() -> None:
         assert row["largest"] == n.bit_length()
     assert Fraction(record["bound"]["most_mean"]) < 2
     assert record["laws"]["largest"]["grade"] == "exact"
+    assert record["laws"]["total"]["grade"] != "exact"
+    at_powers = record["laws"]["total_at_powers"]
+    assert (at_powers["grade"], at_powers["formula"]) == ("exact", "2*n - 1")
 
 
 def test_growing_array_copies_less_than_two_a_place() -> None:

@@ -31,7 +31,9 @@ def show_life(record: Json, console: Console) -> None:
     sheet = Sheet(console)
     title(sheet, "COST OVER A LIFE", record)
     sheet.part("Laws", "of one operation: the mean is the amortised cost")
-    _laws(sheet, record["laws"], ("total", "largest", "mean"))
+    laws = record["laws"]
+    powers = {"total, n = 2^k": laws["total_at_powers"]} if laws["total_at_powers"] else {}
+    _laws(sheet, {**laws, **powers}, ("total", *powers, "largest", "mean"))
     bound = record["bound"]
     operations = record["sizes"][-1]["operations"]
     sheet.say(

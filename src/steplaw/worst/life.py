@@ -22,6 +22,8 @@ from steplaw.worst.job import law_of
 from steplaw.worst.search import Report
 
 SIZES = (*range(1, 34), 48, 63, 64, 65, 100, 127, 128, 129, 200, 255, 256, 257, 384, 511, 512)
+#: Sizes that are powers of two, from as many of which on a law of theirs is looked for.
+POWERS_LEAST = 8
 NOTE = "A life is one sequence of operations: another may cost more."
 
 
@@ -83,16 +85,36 @@ def life(study: Study, report: Report | None = None) -> LifeRecord:
             "feed": about["feed"],
             "sizes": [_row(n, values) for n, values in lives.items()],
             "operations": lives[max(lives)],
-            "laws": {
-                "total": law_of({n: sum(v) for n, v in lives.items()}),
-                "largest": law_of({n: max(v) for n, v in lives.items()}),
-                "mean": _mean(lives),
-            },
+            "laws": _laws(lives),
             "bound": _bound(lives[max(lives)]),
             "notes": [NOTE],
             "run_again": study.again,
         }
     )
+
+
+def _laws(lives: dict[int, list[int]]) -> dict[str, Any]:
+    total = law_of({n: sum(v) for n, v in lives.items()})
+    return {
+        "total": total,
+        "largest": law_of({n: max(v) for n, v in lives.items()}),
+        "mean": _mean(lives),
+        "total_at_powers": None if total["grade"] == "exact" else _at_powers(lives),
+    }
+
+
+def _at_powers(lives: dict[int, list[int]]) -> dict[str, Any] | None:
+    """Give the law of the total at powers of two, where one is exact.
+
+    What carries over like the digits of a counter is irregular in between and plain there.
+    """
+    totals = {n: sum(v) for n, v in lives.items() if n.bit_count() == 1}
+    if len(totals) < POWERS_LEAST:
+        return None
+    law = law_of(totals)
+    if law["grade"] != "exact":
+        return None
+    return {**law, "note": "held against the sizes that are powers of two, and claimed of no other"}
 
 
 def _mean(lives: dict[int, list[int]]) -> dict[str, Any]:
