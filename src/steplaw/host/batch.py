@@ -12,9 +12,12 @@ from steplaw.feed import FeedError
 from steplaw.host.adversary import adversary
 from steplaw.host.fork import Reply, failure
 from steplaw.host.held import held
-from steplaw.host.watch import change
+from steplaw.host.strategic import strategic, strategies_in
+from steplaw.host.watch import Watch, change
 from steplaw.tally.assembled import tally_of
+from steplaw.tally.collector import YOUNG, Undisturbed
 from steplaw.tally.model import Tally
+from steplaw.tally.rewrite import Probed
 from steplaw.tally.snapshot import CodeCounts
 from steplaw.toll.ledger import LEDGER
 from steplaw.wording import describe
@@ -44,13 +47,17 @@ def written(counted: CountedSubject, at: Mapping[str, int], draws: int) -> Itera
     Yields
     ------
     dict
-        ``args`` and ``kwargs`` of each draw, as text.
+        ``args`` and ``kwargs`` of each draw, as text; or ``strategy`` where the feed gives
+        strategies of hypothesis.
     """
     for draw in range(draws):
         try:
             made = counted.feed.make(at, draw)
         except FeedError as error:
             yield failure("feed", str(error))
+            return
+        if strategies_in(made):
+            yield {"strategy": True}
             return
         yield {
             "args": [repr(a) for a in made.args],
@@ -138,26 +145,36 @@ class Counter:
         Whose registry and watch are used.
     figure : str
         The figure.
+    watch : Watch, optional
+        What to read, where it is not the subject's own watch.
+
+    Attributes
+    ----------
+    ran : set of Probed
+        The code objects that ran, as far as they were watched.
     """
 
-    def __init__(self, counted: CountedSubject, figure: str) -> None:
+    def __init__(self, counted: CountedSubject, figure: str, watch: Watch | None = None) -> None:
         self._counted = counted
         self._figure = figure
         self._known: dict[Any, int] = {}
-        counted.watch.begin()
+        self._watch = watch or counted.watch
+        self._watch.begin()
+        self.ran: set[Probed] = set()
 
     def count(self, work: Callable[[], object]) -> Reply:
         """Call, and give ``value`` or what was ``raised``."""
-        before = self._counted.watch.readings()
-        LEDGER.take()
-        try:
-            work()
-        except (SystemExit, MemoryError):
-            raise
-        except BaseException as error:
-            return {"raised": describe(error)}
-        taken = LEDGER.take()
-        after = self._counted.watch.readings()
+        with Undisturbed(YOUNG):
+            before = self._watch.readings()
+            LEDGER.take()
+            try:
+                work()
+            except (SystemExit, MemoryError):
+                raise
+            except BaseException as error:
+                return {"raised": describe(error)}
+            taken = LEDGER.take()
+            after = self._watch.readings()
         key = change(before, after), taken
         if key not in self._known:
             codes = [
@@ -165,13 +182,14 @@ class Counter:
                 for probed, reading in after.items()
                 if before.get(probed) != reading
             ]
+            self.ran.update(c.probed for c in codes)
             tally = tally_of(codes, taken=taken)
             self._known[key] = value_of(tally, self._figure, self._counted.subject.file)
         return {"value": self._known[key]}
 
     def unwatched(self) -> Iterator[Reply]:
         """Give one reply with ``widen`` where code ran that was not watched."""
-        places = self._counted.watch.unwatched()
+        places = self._watch.unwatched()
         if places:
             yield {"widen": places}
 
@@ -200,5 +218,8 @@ SEARCHES: dict[str, Callable[[CountedSubject, Mapping[str, Any]], Iterator[Reply
     "batch": lambda counted, r: batch(counted, r["inputs"], r["figure"]),
     "life": lambda counted, r: life(counted, r["at"], r["figure"]),
     "adversary": lambda counted, r: adversary(counted, r["size"], r["rest"]),
+    "strategy": lambda counted, r: strategic(
+        counted, r["at"], r["examples"], r["seed"], partial(Counter, counted, r["figure"])
+    ),
     "held": lambda counted, r: held(counted, r["at"]),
 }

@@ -13,6 +13,7 @@ from steplaw import subject as subjects
 from steplaw.feed import Feed, FeedError, Input
 from steplaw.host.fork import Reply, failure
 from steplaw.host.measured import measured
+from steplaw.host.strategic import strategies_in
 from steplaw.host.watch import Watch, change
 from steplaw.subject import Subject
 from steplaw.tally.assembled import tally_of
@@ -24,6 +25,11 @@ from steplaw.toll.ledger import LEDGER, Taken
 from steplaw.wording import describe
 
 Size = Mapping[str, int]
+
+ONLY_WORST = (
+    "the feed gives a strategy of hypothesis, which no law can be held against: "
+    "let it draw values from rng (steplaw worst alone takes strategies)"
+)
 
 
 class CountedSubject:
@@ -73,6 +79,9 @@ class CountedSubject:
             made = (feed or self.feed).make(at, draw)
         except FeedError as error:
             yield failure("feed", str(error))
+            return
+        if strategies_in(made):
+            yield failure("feed", ONLY_WORST)
             return
         self.fresh()
         sizes = measured(self.subject.function, made.args, made.kwargs)

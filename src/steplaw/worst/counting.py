@@ -38,6 +38,15 @@ class Given:
             return self.args[0]
         return f"args({', '.join([*self.args, *named])})"
 
+    def must_be_plain(self) -> None:
+        """Refuse what is not made of plain values."""
+        for text in (*self.args, *(v for _, v in self.kwargs)):
+            _plain(text)
+
+
+class Strategies(Exception):
+    """The feed gives strategies of hypothesis in place of values."""
+
 
 class Counts:
     """Counts one figure of a subject on inputs that it is given.
@@ -70,6 +79,8 @@ class Counts:
         ------
         CallError
             If it is not made of plain values, which a file can hold.
+        Strategies
+            If it is made of strategies of hypothesis.
         """
         if (n, draws) not in self._drawn:
             request = {"do": "written", "at": {self.name: n}, "draws": draws}
@@ -77,10 +88,11 @@ class Counts:
                 replies = self._replies(request, n)
             except RunFailed as error:
                 raise CallError(error.failure.message) from None
+            if any("strategy" in r for r in replies):
+                raise Strategies
             found = [Given(tuple(r["args"]), tuple(r["kwargs"].items())) for r in replies]
             for given in found:
-                for text in (*given.args, *(v for _, v in given.kwargs)):
-                    _plain(text)
+                given.must_be_plain()
             self._drawn[n, draws] = found
         return self._drawn[n, draws]
 
@@ -124,6 +136,25 @@ class Counts:
             return None
         order: list[int] = replies[-1]["order"]
         return order
+
+    def strategic(self, n: int, examples: int, seed: int) -> list[Given]:
+        """Give the dearest inputs that hypothesis finds at a size, the dearest first."""
+        request = {
+            "do": "strategy",
+            "at": {self.name: n},
+            "examples": examples,
+            "seed": seed,
+            "figure": self.figure,
+        }
+        try:
+            replies = self._replies(request, n)
+        except RunFailed as error:
+            raise CallError(error.failure.message) from None
+        self.runs += examples
+        found = [Given(tuple(r["args"]), tuple(r["kwargs"].items())) for r in replies]
+        for given in found:
+            given.must_be_plain()
+        return found
 
     def life(self, n: int) -> list[int]:
         """Give the figure of each operation that the subject gives at a size."""

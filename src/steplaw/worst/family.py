@@ -22,7 +22,8 @@ class Family:
     Parameters
     ----------
     form : str
-        ``named``, ``grown``, ``pumped``, ``edges``, ``digits``, ``decided`` or ``as drawn``.
+        ``named``, ``grown``, ``pumped``, ``edges``, ``digits``, ``decided``, ``strategy`` or
+        ``as drawn``.
     name : str
         Which of the named patterns.
     rule : tuple of Step

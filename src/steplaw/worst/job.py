@@ -15,9 +15,10 @@ from steplaw.law import find_law
 from steplaw.law.model import Observation
 from steplaw.record import WorstRecord
 from steplaw.study import Study
-from steplaw.worst.counting import Counts, values_of
+from steplaw.worst.counting import Counts, Strategies, values_of
 from steplaw.worst.kinds import Kind, kind_of
 from steplaw.worst.search import Candidate, Found, Report, Search, law_sizes
+from steplaw.worst.strategies import strategic
 from steplaw.worst.whole import TrueWorst, every_input, every_order
 
 CAUTIONS = (
@@ -82,7 +83,11 @@ def worst(
             found, whole = Found(), _all(counts, study.feed.text, n, about["loaded"]["file"])
             return _finish(study, n, about, counts, found, whole, (), None, write)
         until = None if seconds is None else time.monotonic() + seconds
-        kinds = _kinds(counts, n, about["feed"]["kind"] == "hints")
+        try:
+            kinds = _kinds(counts, n, about["feed"]["kind"] == "hints")
+        except Strategies:
+            found = strategic(counts, n, seed, until, report)
+            return _finish(study, n, about, counts, found, [], (), None, write)
         whole = []
         if [k.name for k in kinds if k.name != "fixed"] == ["permutation"]:
             whole = every_order(counts, kinds, min(exhaust, n))

@@ -135,7 +135,7 @@ class Search:
         alive = self._start()
         tops: list[tuple[int, int]] = []
         for n in rungs:
-            if tops and _predicted(tops, n) > FIGURE_MOST:
+            if tops and predicted(tops, n) > FIGURE_MOST:
                 self.found.ended = "steps"
                 return
             values = self._values(alive, n)
@@ -251,8 +251,16 @@ def _length(candidate: Candidate) -> int:
     )
 
 
-def _predicted(tops: Sequence[tuple[int, int]], n: int) -> float:
-    """Predict the largest figure at a size from the last rungs, as a power of the size."""
+def predicted(tops: Sequence[tuple[int, int]], n: int) -> float:
+    """Predict the largest figure at a size from the last two, as a power of the size.
+
+    Parameters
+    ----------
+    tops : sequence of (int, int)
+        Sizes and their largest figures.
+    n : int
+        The size.
+    """
     (b, vb) = tops[-1]
     if len(tops) < 2 or not vb or not tops[-2][1] or b == tops[-2][0]:
         return vb
