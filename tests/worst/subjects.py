@@ -238,3 +238,17 @@ def pairs(n: int) -> list[tuple[int, int]]:
         for j in range(i):
             out.append((j, i))
     return out
+
+
+def joined_groups(edges: list[tuple[int, int]]) -> int:
+    """How many groups of ports the edges leave, joined by chains that are never shortened."""
+    above: dict[int, int] = {}
+
+    def top(port: int) -> int:
+        while above.setdefault(port, port) != port:
+            port = above[port]
+        return port
+
+    for a, b in edges:
+        above[top(a)] = top(b)
+    return sum(above[port] == port for port in above)

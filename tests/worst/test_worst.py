@@ -178,3 +178,17 @@ def test_real_code_has_inputs_ten_times_dearer_than_the_mean(name: str) -> None:
     """difflib.SequenceMatcher and os.path.commonprefix of the standard library."""
     record = searched(name, 32 if name == "similarity" else 64)
     assert record["best"]["times_mean"] >= 10
+
+
+def test_edges_that_make_long_chains_are_found() -> None:
+    """Joining without weights takes n²/2 steps of a chain at worst.
+
+    Sedgewick & Wayne, Algorithms, 4th edition, 1.5 (quick-union); from memory.
+    """
+    feed = "[(rng.randrange(n), rng.randrange(n)) for _ in range(n)]"
+    figure = line_of("port = above[port]")
+    record = searched("joined_groups", 32, feed=feed, figure=figure)
+    assert record["kinds"] == ["edges"]
+    assert record["family"]["law"]["grade"] == "exact"
+    assert order_of_growth(record) == 2
+    assert record["best"]["times_mean"] > 4
