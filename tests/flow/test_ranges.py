@@ -62,6 +62,14 @@ def caught_inside(n: int) -> int:
     return bad
 
 
+def named_and_let_pass(n: int) -> None:
+    for i in range(n):
+        try:  # noqa: SIM105
+            1 // (i - 2)
+        except KeyError as fault:  # noqa: F841 - its empty end is never reached
+            pass
+
+
 @pytest.mark.parametrize(
     ("function", "loops"),
     [
@@ -72,6 +80,7 @@ def caught_inside(n: int) -> int:
         (over_a_list, 0),
         (raising, 1),
         (caught_inside, 1),
+        (named_and_let_pass, 1),
     ],
 )
 def test_loops_found(function: Callable[..., Any], loops: int) -> None:

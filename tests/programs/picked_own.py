@@ -1,10 +1,11 @@
 """Picked calls written here for what is awkward to count: generators, exceptions, coroutines."""
 
-# ruff: noqa: UP028, B012 - these are the forms under test
+# ruff: noqa: UP028, B012, F841, SIM105 - these are the forms under test
 # mypy: ignore-errors
 
 from __future__ import annotations
 
+import sys
 from typing import Any
 
 from programs.picked import picked
@@ -53,6 +54,29 @@ def raised_in_a_comprehension_in_a_with_in_a_finally() -> Any:
     except ZeroDivisionError as fault:
         log.append(fault.__traceback__ is not None)
     return repr(log)
+
+
+@picked
+def exception_past_a_named_handler_in_a_range() -> Any:
+    def loaded(room: int) -> int:
+        for k in range(room):
+            try:
+                10 // (k - 3)
+            except KeyError as fault:
+                pass
+        return room
+
+    found: list[Any] = []
+    for room in (3, 9, 2, 5):
+        try:
+            found.append(loaded(room))
+        except ZeroDivisionError:
+            try:
+                raise IndexError(room)
+            except IndexError as fault:
+                found.append(repr(fault.__context__))
+        found.append(sys.exc_info()[0])
+    return found
 
 
 @picked

@@ -20,7 +20,7 @@ from types import CodeType
 sys.path[:0] = [str(Path(__file__).parents[2] / "src")]
 
 from steplaw.flow import isa  # noqa: E402
-from steplaw.flow.decode import Decoded  # noqa: E402
+from steplaw.flow.decode import Decoded, Handler  # noqa: E402
 from steplaw.tally.registry import Registry  # noqa: E402
 from steplaw.tally.rewrite import Probed  # noqa: E402
 
@@ -121,27 +121,36 @@ def _handler_faults(
     if written is None:
         yield f"instruction {k} has lost its handler"
         return
-    at = _first_original(new, written.target, origins)
+    at, unwound = _first_original(new, written, origins)
     if at != handler.target:
         yield f"instruction {k} is handled at {at} and not at {handler.target}"
+    elif min(unwound) < unwound[-1]:
+        yield f"instruction {k} unwinds to {unwound} items, the last of which are gone"
 
 
-def _first_original(new: Decoded, k: int, origins: list[int]) -> int | None:
-    """Go through inserted instructions, jumps and re-raises to the first original one."""
+def _first_original(
+    new: Decoded, handler: Handler, origins: list[int]
+) -> tuple[int | None, list[int]]:
+    """Go through inserted instructions, jumps and re-raises to the first original one.
+
+    The second part is the depths that the stack is unwound to on the way.
+    """
+    k, unwound = handler.target, [handler.depth]
     for _ in range(10_000):
         if origins[k] >= 0:
-            return origins[k]
+            return origins[k], unwound
         op = new.ops[k]
         if op in isa.ALWAYS_RAISE:
-            handler = new.handlers[k]
-            if handler is None:
-                return None
-            k = handler.target
+            entry = new.handlers[k]
+            if entry is None:
+                return None, unwound
+            k = entry.target
+            unwound.append(entry.depth)
         elif op in isa.GOTO:
             k = new.targets[k]
         else:
             k += 1
-    return None
+    return None, unwound
 
 
 @dataclass(slots=True)

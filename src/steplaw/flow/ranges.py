@@ -79,12 +79,14 @@ def range_loops(graph: Blocks) -> list[RangeLoop]:
     ]
     if not heads:
         return []
-    depth = depths(graph)
+    depth, reached = depths(graph), _reached(graph)
     loops = []
     for head, call in heads:
         level = depth[head]
-        body = None if level is None else _body(graph, head, depth, level)
-        if body is None or level is None or not _closed(graph, head, body):
+        body = None if level is None else _body(graph, head, depth, level, reached)
+        if body is None or level is None or not _closed(graph, head, body, reached):
+            continue
+        if not _lets_go(graph, body, level):
             continue
         edge = next(n for n, e in enumerate(graph.edges) if e.source == head and e.kind == "fall")
         loops.append(RangeLoop(head, body, call, level, edge))
@@ -111,15 +113,17 @@ def _range_call(graph: Blocks, head: int) -> int | None:
     return None
 
 
-def _body(graph: Blocks, head: int, depth: list[int | None], level: int) -> frozenset[int] | None:
+def _body(
+    graph: Blocks, head: int, depth: list[int | None], level: int, reached: frozenset[int]
+) -> frozenset[int] | None:
     """Give the blocks that lead back to a loop's head without passing it, None for no such loop."""
     before: list[set[int]] = [set() for _ in graph.blocks]
     for edge in graph.edges:
-        if edge.source >= 0 and edge.target >= 0:
+        if edge.source in reached and edge.target >= 0:
             before[edge.target].add(edge.source)
     for k, b in enumerate(graph.of):
         handler = graph.handler_block(k)
-        if handler >= 0 and b >= 0:
+        if handler >= 0 and b in reached:
             before[handler].add(b)
     entries = [b for b in before[head] if b < head]
     if entries != [head - 1] or any(
@@ -141,6 +145,31 @@ def _body(graph: Blocks, head: int, depth: list[int | None], level: int) -> froz
             keeping.discard(graph.of[entry.target])
     _add_raising(graph, head, body, before, keeping)
     return frozenset(body)
+
+
+def _reached(graph: Blocks) -> frozenset[int]:
+    """Give the blocks that something leads to, handled exceptions included.
+
+    Compilers leave others behind, as the end of an empty ``except``.
+    """
+    after: list[set[int]] = [set() for _ in graph.blocks]
+    todo = []
+    for edge in graph.edges:
+        if edge.source == OUTSIDE:
+            todo.append(edge.target)
+        elif edge.target >= 0:
+            after[edge.source].add(edge.target)
+    for k, b in enumerate(graph.of):
+        handler = graph.handler_block(k)
+        if handler >= 0 and b >= 0:
+            after[b].add(handler)
+    reached: set[int] = set()
+    while todo:
+        b = todo.pop()
+        if b not in reached:
+            reached.add(b)
+            todo.extend(after[b])
+    return frozenset(reached)
 
 
 def _add_raising(
@@ -185,7 +214,7 @@ def _keeps(graph: Blocks, b: int, depth: int, level: int) -> bool:
     return True
 
 
-def _closed(graph: Blocks, head: int, body: frozenset[int]) -> bool:
+def _closed(graph: Blocks, head: int, body: frozenset[int], reached: frozenset[int]) -> bool:
     """Whether a loop is left at its head or by an exception alone, and never suspended."""
     for edge in graph.edges:
         if edge.source == OUTSIDE and edge.target in body:
@@ -193,6 +222,15 @@ def _closed(graph: Blocks, head: int, body: frozenset[int]) -> bool:
         leaves = edge.source in body and edge.target not in body
         if leaves and edge.source != head and edge.kind not in ("raise", "pass"):
             return False
-        if edge.target in body and edge.source not in body and edge.target != head:
+        if edge.target in body and edge.source in reached - body and edge.target != head:
             return False
     return len(body) > 1
+
+
+def _lets_go(graph: Blocks, body: frozenset[int], level: int) -> bool:
+    """Whether an exception that leaves a loop takes the iterator off the stack."""
+    return all(
+        handler is None or handler.depth < level or graph.of[handler.target] in body
+        for k, handler in enumerate(graph.decoded.handlers)
+        if graph.of[k] in body
+    )
