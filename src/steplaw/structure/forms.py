@@ -76,7 +76,7 @@ class Forms:
         """Add up the frequencies of blocks for every figure."""
         from steplaw.flow.lineflow import line_frequencies, steps_of
         from steplaw.flow.pieces import NOTHING
-        from steplaw.tally.classes import class_of
+        from steplaw.tally.classes import classes_of
 
         counts = self._counts
 
@@ -95,8 +95,7 @@ class Forms:
             decoded = found.graph.decoded
             for block, often in zip(found.graph.blocks, found.blocks, strict=True):
                 for k in range(block.first + block.setup, block.last + 1):
-                    operation = class_of(decoded, k)
-                    if operation is not None:
+                    for operation in classes_of(decoded, k):
                         add(("operation", operation), often)
 
     def _hold_against(self, swept: Sweep) -> None:
