@@ -256,6 +256,24 @@ class SpaceRecord(Record):
     schema_file = "space-1.schema.json"
 
 
+class ForecastRecord(Record):
+    """Steps and time foretold from an audit, a `steplaw.forecast/1` record."""
+
+    schema_name = "steplaw.forecast/1"
+    schema_file = "forecast-1.schema.json"
+
+    def __repr__(self) -> str:
+        rows = [f"forecast of {self['subject']['name']}, laws of {self['python']}"]
+        for entry in self["at"]:
+            told = entry["figures"]["steps"]
+            steps = told["interval"] or told["value"]
+            rows.append(f"  at {entry['at']}: steps {steps}, seconds {entry['seconds']}")
+        for entry in self["within"]:
+            sure = entry["sure"] and entry["sure"]["at"]
+            rows.append(f"  within {entry['limit']}: {sure or entry['why'] or 'not for sure'}")
+        return "\n".join(_printable(row) for row in rows)
+
+
 RECORDS: dict[str, type[Record]] = {
     kind.schema_name: kind
     for kind in (
@@ -266,6 +284,7 @@ RECORDS: dict[str, type[Record]] = {
         LifeRecord,
         TypicalRecord,
         SpaceRecord,
+        ForecastRecord,
     )
 }
 

@@ -78,7 +78,7 @@ def command(
 
     SUBJECT is path/to/file.py:name, package.module:name, or either with Class.method.
     """
-    study = make_study(subject, sizes=sizes or None, again=_again(), **given)
+    study = make_study(subject, sizes=sizes or None, again=again(), **given)
     _check_outputs(json_path, page_path, plot_path)
     from steplaw.commands.progress import progress
     from steplaw.job import run
@@ -86,7 +86,7 @@ def command(
     with progress() as report:
         record = run(study, report)
     deliver(record, json_path, page_path, plot_path)
-    return _say_what_failed(record, subject)
+    return say_what_failed(record, subject)
 
 
 def _check_outputs(json_path: str | None, page_path: str | None, plot_path: str | None) -> None:
@@ -97,7 +97,7 @@ def _check_outputs(json_path: str | None, page_path: str | None, plot_path: str 
     must_be_writable(json_path, page_path, plot_path)
 
 
-def _say_what_failed(record: Record, subject: str) -> int:
+def say_what_failed(record: Record, subject: str) -> int:
     """Give one line for each thing that did not end well, and the exit status."""
     status = 0
     repeatable, stopped = record["repeatable"], record["stopped"]
@@ -125,7 +125,8 @@ def _told(stopped: Mapping[str, Any], subject: str) -> str:
 _WITH_VALUE = ("--json", "--page", "--plot", "--processes", "--cluster")
 
 
-def _again() -> str:
+def again() -> str:
+    """Give the command as it was typed, without where the record goes."""
     words = sys.argv[1:]
     kept: list[str] = []
     skip = False

@@ -95,6 +95,7 @@ def show(record: Record, *, error: bool = False) -> None:
 
     from steplaw.faces.terminal import show as show_sheet
     from steplaw.faces.terminal_derive import show_derivation
+    from steplaw.faces.terminal_forecast import show_forecast
     from steplaw.faces.terminal_life import show_life, show_space, show_typical
     from steplaw.faces.terminal_tally import show_tally
     from steplaw.faces.terminal_worst import show_worst
@@ -107,6 +108,7 @@ def show(record: Record, *, error: bool = False) -> None:
     faces = {
         "steplaw.tally/1": show_tally,
         "steplaw.derive/1": show_derivation,
+        "steplaw.forecast/1": show_forecast,
         "steplaw.worst/1": show_worst,
         "steplaw.life/1": show_life,
         "steplaw.typical/1": show_typical,

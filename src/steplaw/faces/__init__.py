@@ -7,7 +7,11 @@ from typing import Any
 
 from steplaw.errors import CallError
 
-_NAMED = {"steplaw.tally/1": "a tally", "steplaw.derive/1": "a derivation"}
+_NAMED = {
+    "steplaw.tally/1": "a tally",
+    "steplaw.derive/1": "a derivation",
+    "steplaw.forecast/1": "a forecast",
+}
 KINDS = ("terminal", "page", "markdown", "svg", "json")
 
 
@@ -44,6 +48,10 @@ def render(record: Mapping[str, Any], as_: str, width: int = 80) -> str:
         return json.dumps(record, indent=2) + "\n"
     if as_ not in KINDS:
         raise CallError(f"there is no face {as_!r}", f"give one of {', '.join(KINDS)}")
+    if kind == "steplaw.forecast/1" and as_ == "markdown":
+        from steplaw.faces.markdown_forecast import comment as forecast_comment
+
+        return forecast_comment(record)
     if kind != "steplaw.audit/1":
         raise CallError(f"{_NAMED.get(kind, 'this')} has no {as_} face", "give --as terminal")
     if as_ == "page":

@@ -50,7 +50,7 @@ def comment(record: Mapping[str, Any]) -> str:
         rows.append(["clock", escape(record["clock"]["reason"])])
     plan = (record.get("sizes") or {}).get("plan") or []
     rows.append(["sizes", escape(sizes(plan, names))])
-    out += _table(["", ""], rows)
+    out += table(["", ""], rows)
     out += _lines(record)
     out += _ledger(record)
     out += _faults(record)
@@ -101,7 +101,8 @@ def code(text: object, cell: bool = False) -> str:
     return span.replace("|", "\\|") if cell else span
 
 
-def _table(heads: Sequence[str], rows: Sequence[Sequence[str]]) -> list[str]:
+def table(heads: Sequence[str], rows: Sequence[Sequence[str]]) -> list[str]:
+    """Give the lines of a table; the cells are Markdown already."""
     lines = [heads, ["---"] * len(heads), *rows]
     return ["| " + " | ".join(cells) + " |" for cells in lines] + [""]
 
@@ -121,7 +122,7 @@ def _lines(record: Mapping[str, Any]) -> list[str]:
                 f"**{share}**" if line.get("dominant") else share,
             ]
         )
-    return _table(["line", "source", "frequency", "share of steps"], rows)
+    return table(["line", "source", "frequency", "share of steps"], rows)
 
 
 def _ledger(record: Mapping[str, Any]) -> list[str]:
@@ -129,7 +130,7 @@ def _ledger(record: Mapping[str, Any]) -> list[str]:
     if not rows:
         return []
     heads = ["line", "in C", "times", "element visits", "charged", "share of all work"]
-    return _table(heads, [[escape(cell) for cell in row] for row in rows])
+    return table(heads, [[escape(cell) for cell in row] for row in rows])
 
 
 def _faults(record: Mapping[str, Any]) -> list[str]:

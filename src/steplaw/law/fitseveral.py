@@ -52,7 +52,7 @@ def fit_several(observations: Sequence[Observation], names: tuple[str, ...]) -> 
     )
     weights = 1.0 / np.sqrt(noise**2 + (SMOOTH * scale) ** 2)
     points = tuple(o.at for o in kept)
-    trials = _trials(points, names, values, weights, held)
+    trials = trials_of(points, names, values, weights, held)
     quiet = float(np.sqrt(np.mean((noise / scale)[-held:] ** 2)))
     if not trials or trials[0][0] > ERROR_ALLOWED + 2 * quiet:
         off = f": the best formula is {100 * trials[0][0]:.1f} % off" if trials else ""
@@ -75,13 +75,14 @@ def _cost(basis: Basis) -> float:
     return len(basis) + sum(t.oddity for t in basis) / 2
 
 
-def _trials(
+def trials_of(
     points: tuple[tuple[int, ...], ...],
     names: tuple[str, ...],
     values: Any,
     weights: Any,
     held: int,
 ) -> list[Trial]:
+    """Fit every basis to the smaller points and judge it at the larger ones, the best first."""
     import numpy as np
 
     scale = np.maximum(np.abs(values), 1.0)

@@ -111,12 +111,12 @@ def fit(observations: Sequence[Observation], name: str, orders: Sequence[Vector]
     the one with fewest and plainest terms is taken. Where another order of growth does as well
     with as few terms, nothing is claimed.
     """
-    data = _prepare(observations)
+    data = prepare(observations)
     if data is None:
         return Law(None, None, "open", note=_too_few(observations), names=(name,))
     if not _wide_enough(data):
         return _open(data, name, "the sizes are too close together to tell orders of growth apart")
-    trials = _trials(data)
+    trials = trials_of(data)
     if not trials:
         return _open(data, name, "no growth in the basis fits the values")
     best = min(trial.score for trial in trials)
@@ -141,7 +141,8 @@ def fit(observations: Sequence[Observation], name: str, orders: Sequence[Vector]
     return _law(data, chosen, nearby, name)
 
 
-def _prepare(observations: Sequence[Observation]) -> Data | None:
+def prepare(observations: Sequence[Observation]) -> Data | None:
+    """Give what a fit works on; None where there are too few sizes or numbers beyond floats."""
     import numpy as np
 
     for least in (4, 2):
@@ -195,7 +196,8 @@ def _design(sizes: tuple[int, ...], exponential: bool) -> list[tuple[list[Basis]
     ]
 
 
-def _trials(data: Data) -> list[Trial]:
+def trials_of(data: Data) -> list[Trial]:
+    """Fit every basis to the smaller sizes and judge it at the larger ones."""
     import numpy as np
 
     exponential = _exponential(data)
