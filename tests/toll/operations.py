@@ -11,6 +11,7 @@ import functools
 import heapq
 import math
 import random
+import re
 from collections import Counter, OrderedDict, deque
 from collections.abc import Callable
 from contextlib import suppress
@@ -258,6 +259,16 @@ LENGTHS["list of an iterator"] = (
     lambda r: list(iter(r)),
     lambda n, i: n,
 )
+
+
+_PATTERN = re.compile("b")
+
+
+def _found(s: str) -> Any:
+    return _PATTERN.search(s)
+
+
+LENGTHS_AT_MOST = {"re search": (lambda n, i: ("a" * n,), _found, lambda n, i: n)}
 
 
 def _delete(xs: list[Any], i: int) -> None:

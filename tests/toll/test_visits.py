@@ -15,7 +15,7 @@ import pytest
 from steplaw.tally import counting
 from steplaw.toll.ledger import LEDGER
 from toll.elements import DONE
-from toll.operations import BOUNDS, COUNTED, LENGTHS, ONE_MORE, Make
+from toll.operations import BOUNDS, COUNTED, LENGTHS, LENGTHS_AT_MOST, ONE_MORE, Make
 
 SIZES = [(n, at) for n in (0, 1, 2, 3, 7, 20, 65) for at in (0, 1, 3, 12, 64, 70)]
 
@@ -79,6 +79,13 @@ def test_a_bound_is_never_below_the_truth(name: str) -> None:
     for (n, at), visits, exact in charged(make, call):
         assert visits >= truth(call, make(n, at), kinds), (n, at)
         assert not visits or not exact, (n, at)
+
+
+def test_a_pattern_is_charged_the_text_it_passes_over() -> None:
+    make, call, length = LENGTHS_AT_MOST["re search"]
+    for (n, at), visits, exact in charged(make, call):
+        assert visits == length(n, at)
+        assert not visits or not exact
 
 
 def test_there_are_at_least_sixty_operations() -> None:

@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 import itertools
+import re
 from array import array
 from collections import OrderedDict, deque
-from types import BuiltinFunctionType, GeneratorType, MethodDescriptorType, MethodWrapperType
+from types import BuiltinFunctionType, GeneratorType
 from typing import Any
 
 _DICT: dict[Any, Any] = {}
@@ -33,7 +34,8 @@ SHORT_BITS = 30 * SHORT_DIGITS
 SCALARS = frozenset({int, float, complex, bool, type(None), type(Ellipsis)})
 #: Equality of these runs no Python code and changes nothing.
 PLAIN = SCALARS | {str, bytes}
-C_CALLABLES = frozenset({BuiltinFunctionType, MethodDescriptorType, MethodWrapperType})
+#: Functions of C, and methods of C that are told the class that defines them.
+BUILTIN = frozenset({BuiltinFunctionType, type(re.compile("").search)})
 _MRO = type.__dict__["__mro__"].__get__
 _LEN: dict[Any, Any] = {x: x.__len__ for x in SIZED}
 

@@ -77,7 +77,7 @@ def look_up(function: Any, args: tuple[Any, ...]) -> Found | Quiet | None:
     kind = type(function)
     if kind is types.FunctionType or kind is types.MethodType:
         return QUIET
-    if kind is types.BuiltinFunctionType:
+    if kind in kinds.BUILTIN:
         return _builtin(function, args)
     if kind is types.MethodDescriptorType or kind is types.WrapperDescriptorType:
         if not args:

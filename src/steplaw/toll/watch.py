@@ -84,7 +84,7 @@ def _by_rule(function: Any, args: tuple[Any, ...], kwargs: dict[str, Any], place
 def _name_of(function: Any) -> str:
     kind = type(function)
     name = function.__name__ if kind in _NAMED or type in kinds.bases(kind) else kind.__name__
-    owner = getattr(function, "__self__", None) if kind is types.BuiltinFunctionType else None
+    owner = getattr(function, "__self__", None) if kind in kinds.BUILTIN else None
     if owner is not None and type(owner) is not types.ModuleType:
         return f"{type(owner).__name__}.{name}"
     if owner is not None and owner.__name__ != "builtins":
@@ -92,7 +92,7 @@ def _name_of(function: Any) -> str:
     return str(name)
 
 
-_NAMED = {types.BuiltinFunctionType, types.MethodDescriptorType, types.MethodWrapperType}
+_NAMED = kinds.BUILTIN | {types.MethodDescriptorType, types.MethodWrapperType}
 
 
 @hidden
