@@ -10,6 +10,7 @@ from itertools import pairwise
 from statistics import median
 from typing import Any
 
+from steplaw.clock.higher import Higher, higher_term, lower_half
 from steplaw.clock.timing import Size, Timing
 
 SIZES_LEAST = 4
@@ -39,8 +40,10 @@ def check(
     modelled time is followed over the logarithm of the size by a level line that breaks into a
     slope, or jumps to another level, at one of the sizes; the break with the least squares counts.
     Time departs from the steps when the rise over the upper half of the sizes is beyond 1.5 times,
-    or its slope beyond 0.15, by more than the noise. The noise is the greater of what the rounds
-    show and what the broken line leaves over.
+    or its slope beyond 0.15, by more than the noise; or where a term of one order more than the
+    steps adds more than 35 in a hundred at the largest size, by more than the noise. The noise is
+    the greater of what the rounds show and what the fit leaves over. Time agrees only where the
+    noise could not hide a term that doubles it.
 
     Parameters
     ----------
@@ -126,10 +129,39 @@ def _judge(rows: list[Row], listed: int, unit: str) -> dict[str, Any]:
             at = rows[best.place][0].at
             reason = f"from {_name(at)} on, time grows {pace} than the {unit}: {growth}"
             return say(False, reason, at)
+    term = _higher(rows)
+    if term is not None and term.departs:
+        return say(False, *_of_one_order_more(rows, term, growth, unit))
     unseen = abs(course.whole.rise) + 2 * course.whole.rise_error > math.log2(RISE_UNSEEN)
-    if unseen or course.ends_apart:
+    if unseen or course.ends_apart or (term is not None and term.may_hide):
         return say(None, f"the timings are too noisy to judge: {growth}")
     return say(True, f"time follows the {unit}: {growth}{_drift(rows, course)}")
+
+
+def _higher(rows: list[Row]) -> Higher | None:
+    lower = [lower_half(t.samples) for t, _ in rows]
+    noise = max(NOISE_FLOOR, sum(error for _, error in lower) / len(lower))
+    return higher_term(
+        [_extent(t.at) for t, _ in rows],
+        [float(s) for _, s in rows],
+        [mean for mean, _ in lower],
+        [
+            math.hypot(error if error > 3 * noise else noise, OVERHEAD_ERROR_NS / mean)
+            for mean, error in lower
+        ],
+    )
+
+
+def _of_one_order_more(rows: list[Row], term: Higher, growth: str, unit: str) -> tuple[str, Size]:
+    """Say that a term of one order more hides in the time, and from where on it shows."""
+    top = _extent(rows[-1][0].at)
+    shown = [t.at for t, _ in rows if term.share * _extent(t.at) / top >= DRIFT_NAMED - 1]
+    at = shown[0]
+    return (
+        f"from {_name(at)} on, time grows faster than the {unit}: at {_name(rows[-1][0].at)}, a "
+        f"term of one order more adds {term.share:.0%} ± {term.error:.0%}; {growth}",
+        at,
+    )
 
 
 def _drift(rows: list[Row], course: _Course) -> str:
