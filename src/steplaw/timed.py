@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from fractions import Fraction
 from typing import Any
 
@@ -33,15 +33,26 @@ def points_to_time(swept: Sweep) -> list[Observation]:
     -------
     list of Observation
         Smallest first; steps and native visits together grow by a quarter or more from one to
-        the next. Empty where
-        every input of a size was run: there is no one input to time.
+        the next, or the sizes do where these hardly grow: the time may all the same, by work
+        that is not charged. Empty where every input of a size was run: there is no one input to
+        time.
     """
     if swept.whole:
         return []
-    steps = series.of(swept, lambda run: work(run.tally))
+    steps = [o for o in series.of(swept, lambda run: work(run.tally)) if all(o.at) and o.value > 0]
+    chosen = _apart(steps, lambda o: o.value)
+    if len(chosen) == 1:
+        chosen = _apart(steps, lambda o: Fraction(math.prod(o.at)))
+    return chosen
+
+
+def _apart(
+    observed: Sequence[Observation], measure: Callable[[Observation], Fraction]
+) -> list[Observation]:
+    """Give those that are a quarter or more apart from each other, smallest first."""
     chosen: list[Observation] = []
-    for o in sorted(steps, key=lambda o: (o.value, o.at), reverse=True):
-        if all(o.at) and o.value > 0 and (not chosen or o.value * 5 <= chosen[-1].value * 4):
+    for o in sorted(observed, key=lambda o: (measure(o), o.at), reverse=True):
+        if not chosen or measure(o) * 5 <= measure(chosen[-1]) * 4:
             chosen.append(o)
     return chosen[::-1][-SIZES_MOST:]
 
