@@ -168,6 +168,11 @@ class _Writer:
         head = self.times.join(self.group(f) for f in numbers if not _is_one(f))
         divisor = self.times.join(self.group(f) for f in below_numbers)
         body = self._join([self.group(f) for f in others] + binary)
+        if below and not (head and body):
+            bottom = self._join([self.group(f) for f in below])
+            bottom = divisor + self.gap(divisor, bottom) + bottom if divisor else bottom
+            closed = _closed(bottom, len(below_numbers + below))
+            return _Piece(f"{head or body or '1'}/{closed}", PRODUCT)
         closed = f"/{_closed(divisor, len(below_numbers))}" if divisor else ""
         if head and closed and body:
             text = head + closed + self.gap(head + closed, body) + body

@@ -203,7 +203,8 @@ def evidence(law: Json, names: Sequence[str], unicode: bool = True) -> list[tupl
     Returns
     -------
     list of (str, str)
-        Grade, sizes that settled and checked it, from where it holds, error, note.
+        Grade, sizes that settled and checked it, from where it holds, error, intervals of its
+        coefficients, note.
     """
     grade = law["grade"]
     out = [("grade", f"{grade}: {GRADES.get(grade, '')}")]
@@ -217,9 +218,26 @@ def evidence(law: Json, names: Sequence[str], unicode: bool = True) -> list[tupl
         out.append(("holds from", low))
     if law.get("error") is not None and grade == "fitted":
         out.append(("error", f"at most {100 * law['error']:.2g} % at the sizes checked"))
+    intervals = _intervals(law, unicode)
+    if intervals:
+        out.append(("95 % between", intervals))
     if law.get("note"):
         out.append(("note", clean(law["note"], unicode)))
     return out
+
+
+def _intervals(law: Json, unicode: bool) -> str:
+    """Write the intervals of a fitted law's coefficients, term by term."""
+    out = []
+    for term in (law.get("details") or {}).get("terms") or ():
+        low, high = (_minus(f"{term[key]:.4g}", unicode) for key in ("low", "high"))
+        name = "the constant" if term["term"] == "1" else pretty(term["term"], unicode)
+        out.append(f"{name}: {low} to {high}")
+    return "; ".join(out)
+
+
+def _minus(text: str, unicode: bool) -> str:
+    return text.replace("-", "−") if unicode else text
 
 
 def named_laws(record: Json) -> list[tuple[str, Json]]:
