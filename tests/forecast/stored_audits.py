@@ -29,6 +29,17 @@ def stored(
     rng = random.Random(seed)
     points = [at if isinstance(at, tuple) else (at,) for at in sizes]
     runs = {at: [count(*at, rng) for _ in range(draws)] for at in points}
+    return record_of_runs(runs, names, clock, law)
+
+
+def record_of_runs(
+    runs: Mapping[tuple[int, ...], Sequence[int]],
+    names: Sequence[str] = ("n",),
+    clock: Mapping[str, Any] | None = None,
+    law: Mapping[str, Any] | None = None,
+) -> AuditRecord:
+    """Give the record of an audit that counted these steps, by size and draw."""
+    draws = max(len(values) for values in runs.values())
     seen = [observed(at, values) for at, values in runs.items()]
     found = dict(law) if law is not None else find_law(seen, tuple(names)).as_json()
     own = {"name": "sail", "file": "ferry.py", "line": 3, "digest": "0"}
@@ -39,7 +50,7 @@ def stored(
         "python": "3.11.7",
         "sizes": {
             "names": list(names),
-            "plan": [named(names, at) for at in points],
+            "plan": [named(names, at) for at in runs],
             "settled_by": [],
             "held_out": [],
         },

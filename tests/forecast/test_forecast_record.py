@@ -56,6 +56,13 @@ def test_an_exact_law_gives_the_number() -> None:
     assert first["why_no_seconds"] == "the clock check was not made"
 
 
+def test_an_exact_law_of_drawn_inputs_says_what_it_cannot_know() -> None:
+    (entry,) = forecast(stored(cubic, draws=3), at=10**4)["at"]
+    told = entry["figures"]["steps"]
+    assert (told["grade"], told["value"]) == ("exact", cubic(10**4, random.Random()))
+    assert "none of them took" in told["why"]
+
+
 def test_a_fitted_law_gives_an_interval() -> None:
     record = stored(drawn, draws=5)
     assert record["figure"]["law"]["grade"] == "fitted"

@@ -16,6 +16,10 @@ from steplaw.law.evaluate import Number, value
 from steplaw.law.model import Observation
 
 Json = Mapping[str, Any]
+UNTAKEN = (
+    "every draw of a size took the same steps; a way through the code that none of them took is "
+    "not in the law"
+)
 MOST_DIGITS = 1000
 """Longer numbers are told by their length."""
 
@@ -37,7 +41,7 @@ class Amount:
     bound : Fraction, float or None
         What the count is proved never to exceed.
     why : str
-        Why there is no number.
+        Why there is no number, or what may be amiss with it.
     """
 
     grade: str
@@ -131,7 +135,14 @@ class Figure:
         if self.law["grade"] == "fitted":
             return self._fitted(point, at, number)
         low, high = self._one_run(point, at, number)
-        return Amount(self.law["grade"], number, low, high, bound=self._bound_at(at))
+        why = UNTAKEN if self._may_vary else ""
+        return Amount(self.law["grade"], number, low, high, bound=self._bound_at(at), why=why)
+
+    @property
+    def _may_vary(self) -> bool:
+        """Whether inputs are drawn that all took the same steps, and nothing proves that all do."""
+        unproved = self.law["grade"] == "exact" and not self.spread
+        return bool(unproved and self.record["feed"]["varies"])
 
     def _counted(self, point: tuple[int, ...]) -> Amount | None:
         """Give what was counted at a size that the law does not speak of."""

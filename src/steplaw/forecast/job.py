@@ -176,7 +176,7 @@ class Teller:
             if more is None:
                 return None, f"no time is foretold without the native visits: {visits.why}"
             low, high = low + float(self.rate) * more[0], high + float(self.rate) * more[1]
-        found = self.pace.seconds(low, high)
+        found = self.pace.seconds(at, low, high)
         if not found[1] < 1e300:
             return None, "the time is beyond any number"
         return found, ""

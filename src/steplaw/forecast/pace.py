@@ -14,10 +14,20 @@ Json = Mapping[str, Any]
 LEAST_ROWS = 4
 SHORTEST = 200e-9
 """Calls shorter than this, in seconds, are mostly the call itself."""
-STEADIEST = 0.05
-"""A drift of the rate that is allowed for where the clock agrees: the power of the work."""
+STEADIEST, UNSTEADIEST = 0.05, 0.15
+"""Where the clock agrees, the rate may drift with a power of the size between these two: what
+cannot be excluded, and what the clock check itself lets pass."""
 UNDECIDED = 1.5
 """Where the clock check came to no verdict, the rate may lie this many times off."""
+
+
+@dataclass(frozen=True, slots=True)
+class Row:
+    """A size that was timed: its extent, its work, and nanoseconds a unit of work."""
+
+    extent: float
+    work: float
+    rate: float
 
 
 @dataclass(frozen=True, slots=True)
@@ -29,26 +39,27 @@ class Pace:
     low, high : float
         Nanoseconds a unit of work over the larger sizes timed.
     falls, rises : float
-        Powers of the work that the rate may fall and rise with beyond them.
-    first, last : float
-        Work at the smallest and the largest size that the rates were taken from.
-    rates : tuple of (float, float)
-        Work and rate at each size timed.
+        Powers of the size that the rate may fall and rise with beyond them.
+    rows : tuple of Row
+        All sizes timed, the smallest first.
+    first : Row
+        The smallest of the larger sizes that `low` and `high` span.
     """
 
     low: float
     high: float
     falls: float
     rises: float
-    first: float
-    last: float
-    rates: tuple[tuple[float, float], ...]
+    rows: tuple[Row, ...]
+    first: Row
 
-    def seconds(self, least: float, most: float) -> tuple[float, float]:
+    def seconds(self, at: Mapping[str, int], least: float, most: float) -> tuple[float, float]:
         """Give the time of a run.
 
         Parameters
         ----------
+        at : mapping of str to int
+            The size.
         least, most : float
             Work of the run.
 
@@ -57,20 +68,20 @@ class Pace:
         tuple of float
             Seconds, least and most.
         """
-        low, high = self._rate(least)[0], self._rate(most)[1]
+        low, high = self._rates(_extent(at))
         return least * low / 1e9, most * high / 1e9
 
-    def _rate(self, work: float) -> tuple[float, float]:
+    def _rates(self, extent: float) -> tuple[float, float]:
         low, high = self.low, self.high
-        if work > self.last:
-            reach = work / self.last
+        reach = extent / self.rows[-1].extent
+        if reach > 1:
             return low * reach**self.falls, high * reach**self.rises
-        if work < self.first:
+        if extent < self.first.extent:
             # What a call costs by itself weighs more in a short run.
-            near = [rate for at, rate in self.rates if at >= work / 4 and at <= self.first]
+            near = [row.rate for row in self.rows if extent / 4 <= row.extent <= self.first.extent]
             low, high = min([low, *near]), max([high, *near])
-            if work < self.rates[0][0]:
-                high *= self.rates[0][0] / max(work, 1.0)
+            if extent < self.rows[0].extent:
+                high *= self.rows[0].extent / max(extent, 1.0)
         return low, high
 
 
@@ -91,9 +102,11 @@ def pace(clock: Json | None) -> tuple[Pace | None, str]:
 
     Notes
     -----
-    The rates of the larger sizes are followed over the work on logarithmic scales, by least
+    The rates of the larger sizes are followed over the size on logarithmic scales, by least
     squares. Beyond them a rate may go on as that line does, within its 95 % interval, or stay as
     it is; where time was found to depart from the steps, it may do either from where it departs.
+    Where time agrees, the drift is kept between what such a check cannot exclude and what it
+    would have told.
     """
     if clock is None:
         return None, "the clock check was not made"
@@ -103,48 +116,49 @@ def pace(clock: Json | None) -> tuple[Pace | None, str]:
         return None, f"no time is foretold: {clock['reason']}"
     agrees, why, wider = clock["agrees"], "", 1.0
     upper = rows[len(rows) // 2 :] if len(rows) >= 2 * LEAST_ROWS else rows[-LEAST_ROWS:]
-    low, high = between
+    most = math.inf
     if agrees is None:
         why = f"the clock check is undecided, so the interval is wide: {clock['reason']}"
         wider = UNDECIDED
     elif agrees is False:
         why = f"time departs from the law, so the interval is wide: {clock['reason']}"
         upper = _departed(clock, rows) or upper
+    else:
+        most = UNSTEADIEST
     slope, error = _drift(upper)
-    falls = min(0.0, slope - error, -STEADIEST)
-    rises = max(0.0, slope + error, STEADIEST)
-    low, high = min(low, *(r for _, r in upper)), max(high, *(r for _, r in upper))
-    return (
-        Pace(low / wider, high * wider, falls, rises, upper[0][0], upper[-1][0], tuple(rows)),
-        why,
-    )
+    falls = min(max(error - slope, STEADIEST), most)
+    rises = min(max(error + slope, STEADIEST), most)
+    low = min(between[0], *(row.rate for row in upper)) / wider
+    high = max(between[1], *(row.rate for row in upper)) * wider
+    return Pace(low, high, -falls, rises, tuple(rows), upper[0]), why
 
 
-def _rows(clock: Json) -> list[tuple[float, float]]:
-    """Give work and rate at each size that was timed well, by work."""
+def _extent(at: Mapping[str, int]) -> float:
+    return float(math.prod(max(1, n) for n in at.values()) ** (1 / len(at)))
+
+
+def _rows(clock: Json) -> list[Row]:
+    """Give what was timed well, the smallest size first."""
     out = []
-    for steps, seconds in zip(clock.get("steps") or [], clock.get("seconds") or [], strict=True):
+    columns = (clock.get(key) or [] for key in ("sizes", "steps", "seconds"))
+    for at, steps, seconds in zip(*columns, strict=True):
         work = float(Fraction(steps))
         if work > 0 and seconds >= SHORTEST:
-            out.append((work, seconds * 1e9 / work))
-    return sorted(out)
+            out.append(Row(_extent(at), work, seconds * 1e9 / work))
+    return sorted(out, key=lambda row: (row.extent, row.work))
 
 
-def _departed(clock: Json, rows: list[tuple[float, float]]) -> list[tuple[float, float]]:
+def _departed(clock: Json, rows: list[Row]) -> list[Row]:
     """Give the rows from where time departs on, where these are enough to follow."""
     at = clock.get("departs_from")
-    sizes = clock.get("sizes") or []
-    if at is None or at not in sizes:
-        return []
-    first = float(Fraction(clock["steps"][sizes.index(at)]))
-    found = [row for row in rows if row[0] >= first]
+    found = [] if at is None else [row for row in rows if row.extent >= _extent(at)]
     return found if len(found) >= LEAST_ROWS else []
 
 
-def _drift(rows: list[tuple[float, float]]) -> tuple[float, float]:
-    """Give the power of the work that the rate goes with, and half of its 95 % interval."""
-    xs = [math.log(work) for work, _ in rows]
-    ys = [math.log(rate) for _, rate in rows]
+def _drift(rows: list[Row]) -> tuple[float, float]:
+    """Give the power of the size that the rate goes with, and half of its 95 % interval."""
+    xs = [math.log(row.extent) for row in rows]
+    ys = [math.log(row.rate) for row in rows]
     x_mean, y_mean = sum(xs) / len(xs), sum(ys) / len(ys)
     spread = sum((x - x_mean) ** 2 for x in xs)
     if spread == 0:
