@@ -4,7 +4,7 @@ Run it as ``PYTHONPATH=src python tests/bench/forecasts.py``. It takes about hal
 a quiet machine. Every finished case is a file in the folder that ``--into`` names, with its audit
 and what was run, and a second run takes up where the first one ended. ``--show`` runs nothing: it
 makes the forecasts anew from the stored audits. ``--table PATH`` writes the finished cases as the
-Markdown table of ``docs/forecasts.md``.
+page ``docs/forecasts.md``.
 """
 
 from __future__ import annotations
@@ -249,6 +249,66 @@ def table(rows: list[dict[str, Any]]) -> str:
     return "\n".join(out) + "\n"
 
 
+PAGE = """# Forecasts held against runs
+
+[Forecasts](guide/forecast.md) from sizes up to n, held against one run at 8n. The script
+`tests/bench/forecasts.py` makes this page; [DEVELOPERS.md](../DEVELOPERS.md#gates) has its
+commands. Python {python}; times are of one machine, shared with other work while it was timed.
+
+The samples and the functions that nobody here wrote go through the whole audit. The methods on
+drawn data (`tests/bench/drawn_work.py`, `tests/published/algorithms.py`,
+`tests/worst/subjects.py`) have the plan of sizes, the draws, the counts, the search for the law
+and the timing of an audit, without its laws of lines, functions and classes; the clock is held
+against the steps alone there, so that native visits weigh nothing. The run at 8n is a draw that
+the law was not found on. Its time is that of draw 0, best of several rounds.
+
+{summary}
+
+Where a forecast missed:
+
+{missed}
+
+No forecast is made where the law is open; a dash stands for it, for a run at 8n that is too long
+to be made, and for a time that no four sizes were long enough to tell.
+
+{tables}"""
+TITLES = {
+    "sample": "Samples",
+    "real": "Functions of the standard library and networkx",
+    "drawn": "Methods on drawn data",
+}
+
+
+def page(rows: list[dict[str, Any]]) -> str:
+    """Give the page of documentation."""
+    import platform
+
+    from steplaw.faces.markdown import escape
+    from steplaw.faces.reading_forecast import amount, value
+
+    missed = [
+        f"- {escape(row['subject'].rpartition('/')[2])}, {row['grade']}: "
+        + (
+            f"steps {value(row['steps'])}, foretold {amount(row)}"
+            if steps_hold(row) is False
+            else f"time {row['time']:.3g} s, foretold {row['seconds'][0]:.3g} s to "
+            f"{row['seconds'][1]:.3g} s"
+        )
+        for row in rows
+        if steps_hold(row) is False or time_holds(row) is False
+    ]
+    tables = [
+        f"## {title}\n\n{table([row for row in rows if row['group'] == group])}"
+        for group, title in TITLES.items()
+    ]
+    return PAGE.format(
+        python=platform.python_version(),
+        summary="\n".join(f"- {line}" for line in summary(rows)),
+        missed="\n".join(missed) or "- nowhere",
+        tables="\n".join(tables),
+    )
+
+
 def place_of(case: Case, folder: Path) -> Path:
     """Give the file of a case."""
     digest = hashlib.sha256(f"{case.subject} {case.feed} {case.sizes}".encode()).hexdigest()[:12]
@@ -307,7 +367,7 @@ def main() -> None:
         print("\n".join(map(said, rows)))
     print("\n".join(summary(rows)))
     if given.table is not None:
-        given.table.write_text(table(rows), encoding="utf-8")
+        given.table.write_text(page(rows), encoding="utf-8")
 
 
 if __name__ == "__main__":
