@@ -10,6 +10,7 @@ from __future__ import annotations
 import dis
 import sys
 from collections.abc import Callable
+from types import FunctionType
 from typing import TYPE_CHECKING, Any
 
 from steplaw.flow import isa
@@ -222,7 +223,9 @@ class Watching:
         self._writer.out.mark(back)
         self._after[k] = behind
         self._late.append(
-            lambda: self._call_late(k, count, keywords, place, (slow, back, behind), depth, cover)
+            lambda: self._call_late(
+                k, count, keywords, place, bool(name), (slow, back, behind), depth, cover
+            )
         )
 
     def _call_late(
@@ -231,6 +234,7 @@ class Watching:
         count: int,
         keywords: Any,
         place: int,
+        named: bool,
         labels: tuple[int, int, int],
         depth: int,
         cover: Cover | None,
@@ -238,7 +242,9 @@ class Watching:
         slow, back, behind = labels
         writer, emit = self._writer, self._writer.out.emit
         positional = count - len(keywords or ())
+        there = writer.label()
         writer.out.mark(slow)
+        self._second_look(count, named, place, back, there, cover)
         writer.push(self._const(watch.consider))
         emit(_OP["COPY"], count + (4 if _NEW_CALLS else 3))
         for _ in range(positional):
@@ -246,7 +252,6 @@ class Watching:
         emit(_OP["BUILD_TUPLE"], positional)
         emit(_LOAD_CONST, place)
         self._call_beside(3, k, back, depth, cover)
-        there = writer.label()
         emit(_TRUE, jump=there, cover=cover)
         emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=back)
         writer.out.mark(there)
@@ -257,6 +262,39 @@ class Watching:
         emit(_LOAD_CONST, writer.const(keywords), cover=cover)
         self._call_for(4, k, cover)
         emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=behind)
+
+    def _second_look(
+        self, count: int, named: bool, place: int, back: int, there: int, cover: Cover | None
+    ) -> None:
+        """Write comparisons that settle most calls that the one in line does not.
+
+        A function of Python, or the argument that the callable took before with nothing to
+        charge, goes `back`; a callable that is known to have a rule goes `there`.
+        """
+        writer, emit = self._writer, self._writer.out.emit
+        below = count + (2 if _NEW_CALLS else 1)
+        if named:
+            self._type_of(below, cover)
+        else:
+            other, one = writer.label(), writer.label()
+            self._type_of(below, cover)
+            emit(_LOAD_CONST, self._const(FunctionType), cover=cover)
+            emit(_OP["IS_OP"], 0, cover=cover)
+            emit(_FALSE, jump=other, cover=cover)
+            emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=back)
+            writer.out.mark(other)
+            if count == 1:
+                emit(_OP["COPY"], below, cover=cover)
+                self._is(place, "other", one, cover)
+                self._type_of(1, cover)
+                self._is(place, "calm", one, cover)
+                emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=back)
+            writer.out.mark(one)
+            emit(_OP["COPY"], below, cover=cover)
+        emit(_LOAD_CONST, place, cover=cover)
+        self._attribute("known", cover)
+        emit(_OP["IS_OP"], 0, cover=cover)
+        emit(_TRUE, jump=there, cover=cover)
 
     def _spread_call(self, k: int, cover: Cover | None) -> None:
         """Write the way round a call with arguments spread out."""
@@ -370,23 +408,37 @@ class Watching:
         self._after[k] = behind
 
         def late() -> None:
-            slow = writer.label()
+            slow, longer, fraction = (writer.label() for _ in range(3))
             writer.out.mark(there)
             emit(self._d.ops[k], self._d.args[k], origin=k, cover=cover)
             self._type_of(1, cover)
             emit(_LOAD_CONST, self._const(int), cover=cover)
             emit(_OP["IS_OP"], 0, cover=cover)
+            emit(_FALSE, jump=fraction, cover=cover)
+            self._within(_SHORT, longer, cover)
+            emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=behind)
+            writer.out.mark(longer)
+            self._within(operands.LONG, slow, cover)
+            emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=behind)
+            writer.out.mark(fraction)
+            self._type_of(1, cover)
+            emit(_LOAD_CONST, self._const(float), cover=cover)
+            emit(_OP["IS_OP"], 0, cover=cover)
             emit(_FALSE, jump=slow, cover=cover)
-            for limit, compared in ((_SHORT, _LESS), (-_SHORT, _GREATER)):
-                emit(_OP["COPY"], 1, cover=cover)
-                emit(_LOAD_CONST, self._const(limit), cover=cover)
-                emit(_OP["COMPARE_OP"], compared, cover=cover)
-                emit(_FALSE, jump=slow, cover=cover)
             emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=behind)
             writer.out.mark(slow)
             self._beside(watch.result, (1,), place, k, behind, depth, cover)
 
         self._late.append(late)
+
+    def _within(self, limit: int, beyond: int, cover: Cover | None) -> None:
+        """Write comparisons of a whole number with a limit, on either side of zero."""
+        emit = self._writer.out.emit
+        for bound, compared in ((limit, _LESS), (-limit, _GREATER)):
+            emit(_OP["COPY"], 1, cover=cover)
+            emit(_LOAD_CONST, self._const(bound), cover=cover)
+            emit(_OP["COMPARE_OP"], compared, cover=cover)
+            emit(_FALSE, jump=beyond, cover=cover)
 
     def _contains(self, k: int, cover: Cover | None) -> None:
         writer, emit = self._writer, self._writer.out.emit
@@ -466,11 +518,15 @@ class Watching:
         writer.call(1)
 
     def _unless_quiet(self, place: int, slow: int, cover: Cover | None) -> None:
+        self._is(place, "quiet", slow, cover)
+
+    def _is(self, place: int, attribute: str, unless: int, cover: Cover | None) -> None:
+        """Write a comparison of the top of the stack with what a place keeps."""
         emit = self._writer.out.emit
         emit(_LOAD_CONST, place, cover=cover)
-        self._attribute("quiet", cover)
+        self._attribute(attribute, cover)
         emit(_OP["IS_OP"], 0, cover=cover)
-        emit(_FALSE, jump=slow, cover=cover)
+        emit(_FALSE, jump=unless, cover=cover)
 
     def _unless_other(self, checked: int, place: int, back: int, cover: Cover | None) -> None:
         """Write a comparison of an operand's type with the one seen before the last."""

@@ -36,6 +36,12 @@ class Place:
         Whether a method call is still looked at.
     other : object
         The one seen before that.
+    calm : object
+        Type of the one argument with which a call of `other` has nothing to charge.
+    known : object
+        The callable that a rule was found for last; its type, where it is a method of C.
+    rule : object
+        That rule, where it depends on the callable alone.
     whole : bool
         Whether short whole numbers alone have met there: then the result is looked at.
     found : tuple or None
@@ -44,15 +50,18 @@ class Place:
 
     __slots__ = (
         "argument",
+        "calm",
         "charges",
         "file",
         "found",
+        "known",
         "line",
         "long",
         "name",
         "open",
         "other",
         "quiet",
+        "rule",
         "seen",
         "whole",
     )
@@ -64,6 +73,9 @@ class Place:
         self.argument = argument
         self.quiet: Any = NOTHING
         self.other: Any = NOTHING
+        self.calm: Any = NOTHING
+        self.known: Any = NOTHING
+        self.rule: Any = None
         self.open = True
         self.whole = False
         self.long = False

@@ -42,19 +42,11 @@ _BY_METHOD = {key: rule for key, rule in RULES.items() if isinstance(key, tuple)
 
 
 class Quiet:
-    """The answer for what has nothing to charge.
-
-    Parameters
-    ----------
-    always : bool
-        Whether that holds for the same callable with any arguments.
-    """
-
-    def __init__(self, always: bool) -> None:
-        self.always = always
+    """The answer for what has nothing to charge."""
 
 
-QUIET, QUIET_NOW = Quiet(True), Quiet(False)
+#: With any arguments; with so many of them; with these alone.
+QUIET, QUIET_SO_MANY, QUIET_NOW = Quiet(), Quiet(), Quiet()
 Found = tuple[Rule, Any, tuple[Any, ...], bool]
 
 
@@ -100,7 +92,7 @@ def look_up(function: Any, args: tuple[Any, ...]) -> Found | Quiet | None:
 def _builtin(function: Any, args: tuple[Any, ...]) -> Found | Quiet | None:
     rule = _BY_ID.get(id(function))
     if rule is not None:
-        return (rule, None, args, True) if _fits(rule, args) else QUIET_NOW
+        return (rule, None, args, True) if _fits(rule, args) else QUIET_SO_MANY
     if id(function) in quiet.FUNCTIONS:
         return QUIET
     owner = function.__self__
@@ -108,7 +100,7 @@ def _builtin(function: Any, args: tuple[Any, ...]) -> Found | Quiet | None:
         return None
     rule = _BY_METHOD.get((type(owner), function.__name__))
     if rule is not None:
-        return (rule, owner, args, True) if _fits(rule, args) else QUIET_NOW
+        return (rule, owner, args, True) if _fits(rule, args) else QUIET_SO_MANY
     holder = owner if type in kinds.bases(type(owner)) else type(owner)
     found = _method(holder, function.__name__)
     if isinstance(found, Rule):
@@ -135,7 +127,7 @@ def _method(holder: type, name: str) -> Rule | Quiet | None:
 def _class(function: type, args: tuple[Any, ...]) -> Found | Quiet | None:
     rule = _BY_ID.get(id(function))
     if rule is not None:
-        return (rule, None, args, True) if _fits(rule, args) else QUIET_NOW
+        return (rule, None, args, True) if _fits(rule, args) else QUIET_SO_MANY
     if id(function) in quiet.FUNCTIONS or BaseException in kinds.bases(function):
         return QUIET
     for base in kinds.bases(function):
@@ -147,7 +139,7 @@ def _class(function: type, args: tuple[Any, ...]) -> Found | Quiet | None:
             return QUIET
         if id(base) in _BY_ID and base is not function:
             rule = _BY_ID[id(base)]
-            return (rule, None, args, True) if _fits(rule, args) else QUIET_NOW
+            return (rule, None, args, True) if _fits(rule, args) else QUIET_SO_MANY
         if base is object:
             return QUIET if function.__module__ not in ("numpy", "builtins") else None
     return None

@@ -10,11 +10,16 @@ from sys import maxsize
 from typing import Any
 
 from steplaw.toll import arrays, kinds, operands
+from steplaw.toll.call import Call
 from steplaw.toll.hidden import hidden
 from steplaw.toll.ledger import LEDGER, NOTHING, Place
-from steplaw.toll.rules import QUIET, Quiet, call_of, look_up
+from steplaw.toll.rules import QUIET, QUIET_SO_MANY, Quiet, call_of, look_up
 
 _PYTHON = frozenset({types.FunctionType, types.MethodType})
+_C_METHOD = types.BuiltinFunctionType
+_NUMBERS = frozenset({int, float, complex, bool})
+#: What `int` takes at constant cost: a float has 1024 bits at most.
+_ROUNDED = frozenset({int, float, bool})
 _ITERATED = "sequence.index(x): x not in sequence"
 
 
@@ -26,14 +31,28 @@ def consider(function: Any, args: tuple[Any, ...], place: Place) -> bool:
         LEDGER.pass_over(place, _name_of(function), [kinds.size(x) for x in args])
         return False
     if isinstance(found, Quiet):
-        if found is QUIET:
-            if not place.name:
-                place.settle(function)
-            elif type(function) in _PYTHON:
+        if place.name:
+            if type(function) in _PYTHON:
                 place.quiet = type(function)
+        elif found is QUIET or (found is QUIET_SO_MANY and _holds_nothing(function)):
+            place.settle(function)
         return False
+    if function is int and len(args) == 1 and type(args[0]) in _ROUNDED:
+        place.other, place.calm = function, type(args[0])
+        return False
+    if place.name:
+        place.known = _C_METHOD if type(function) is _C_METHOD else NOTHING
+    elif found[1] is None and found[3]:
+        place.known, place.rule = function, found[0]
+        return True
     place.found = found, function
     return True
+
+
+def _holds_nothing(function: Any) -> bool:
+    """Tell whether a callable may be kept: that keeps no object of the program alive."""
+    owner = getattr(function, "__self__", None) if type(function) is _C_METHOD else None
+    return owner is None or type(owner) is types.ModuleType
 
 
 @hidden
@@ -45,15 +64,25 @@ def charged(
     if names:
         kwargs = dict(zip(names, args[-len(names) :], strict=True))
         args = args[: -len(names)]
+    elif function is place.known:
+        call = Call(function, None, args, kwargs, True)
+        rule = place.rule
+        try:
+            return rule.charge(call)
+        finally:
+            LEDGER.charge(place, rule.operation, call.visits, call.exact)
     return _by_rule(function, args, kwargs, place)
 
 
 @hidden
 def consider_spread(function: Any, args: Any, place: Place) -> bool:
     """Tell whether a call with arguments spread out is to be made by `spread`."""
-    if type(args) is tuple or type(args) is list:
-        return consider(function, tuple(args), place)
-    return False
+    if type(args) is not tuple and type(args) is not list:
+        return False
+    found = look_up(function, tuple(args))
+    if found is QUIET_SO_MANY:
+        return False
+    return consider(function, tuple(args), place)
 
 
 @hidden
@@ -72,6 +101,8 @@ def _by_rule(function: Any, args: tuple[Any, ...], kwargs: dict[str, Any], place
     else:
         found = look_up(function, args)
     if found is None or isinstance(found, Quiet):
+        if found is None:
+            LEDGER.pass_over(place, _name_of(function), [kinds.size(x) for x in args])
         return function(*args, **kwargs)
     call = call_of(found, function, kwargs)
     rule = found[0]
@@ -175,6 +206,13 @@ def binary(left: Any, right: Any, place: Place) -> None:
             LEDGER.short.append(place)
             place.settle(int)
         return
+    if kind is int and type(right) in _NUMBERS:
+        if operands.makes_long(place.argument):
+            place.whole = not place.long
+        elif not LEDGER.long_met:
+            LEDGER.short.append(place)
+            place.settle(int)
+        return
     charge = operands.binary(place.argument, left, right)
     if charge is not None:
         LEDGER.charge(place, *charge)
@@ -208,6 +246,9 @@ def result(value: Any, place: Place) -> None:
     if kind in kinds.SEQUENCES:
         name = f"{kind.__name__} {operands.sign(place.argument)}"
         LEDGER.charge(place, name, len(value), place.argument < operands.IN_PLACE)
+    elif kinds.length(value) is not None or arrays.elements(value):
+        size = arrays.elements(value) or kinds.length(value) or 0
+        LEDGER.pass_over(place, f"{kind.__name__} {operands.sign(place.argument)}", [size])
 
 
 @hidden
