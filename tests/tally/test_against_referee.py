@@ -123,11 +123,6 @@ def _reached(n: int = 0) -> int:
         return n
 
 
-@pytest.mark.xfail(
-    sys.version_info < (3, 12),
-    reason="3.11 counts calls of C functions, and so the recorder, towards the recursion limit",
-    strict=True,
-)
 def test_recursion_goes_as_deep_under_probes() -> None:
     plain = _reached()
     with counting():

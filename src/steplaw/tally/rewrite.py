@@ -23,8 +23,11 @@ from steplaw.tally.trips import Trips
 from steplaw.tally.writer import Writer, returns_constant
 
 FULL = sys.maxsize
-#: The recorder around the body: two items of a call, place and exception, seven pushed.
-_EXTRA_STACK = 11
+#: Stack that a probe takes, a recorder at a handler beside the exception, and what takes off the
+#: passes that an exception cuts short.
+_PROBE_STACK, _HANDLER_STACK, _TRIPS_STACK = 2, 5, 5
+#: Stack of the recorder around the body: place and exception, four pushed.
+_RECORDER_STACK = 6
 #: Cost of a probe that is left on the stack, and of a loop's trip count at its entry,
 #: beside a probe that clears up behind itself.
 _CALL_COST, _TRIPS_COST = 0.5, 2.5
@@ -48,7 +51,7 @@ class Probed:
     trips : dict of int to Trips
         Trip counts that stand for a probe, by place in that order.
     left : dict of int to int
-        Byte offset in `code` of instructions that raised, with how often.
+        Code unit in `code` of instructions that raised, with how often.
     origins : list of int
         Original instruction by code unit of `code`.
     """
@@ -86,7 +89,7 @@ class Probed:
             co_code=assembly.code_bytes(),
             co_consts=tuple(writer.consts),
             co_names=tuple(writer.names),
-            co_stacksize=original.co_stacksize + _extra_stack(writer),
+            co_stacksize=_stack_size(original, writer),
             co_linetable=assembly.location_bytes(original, graph.decoded.starts),
             co_exceptiontable=assembly.exception_bytes(),
         )
@@ -103,9 +106,15 @@ class Probed:
         return sum(n for place, n in enumerate(passes) if place not in self.trips)
 
 
-def _extra_stack(writer: Writer) -> int:
-    deepest = 0 if writer.watching is None else writer.watching.deepest
-    return max(_EXTRA_STACK, deepest)
+def _stack_size(original: CodeType, writer: Writer) -> int:
+    extra = _PROBE_STACK
+    if original.co_exceptiontable:
+        extra = _HANDLER_STACK
+    if writer.range_calls:
+        extra = _TRIPS_STACK
+    if writer.watching is not None:
+        extra = max(extra, writer.watching.deepest)
+    return writer.base + max(original.co_stacksize + extra, _RECORDER_STACK)
 
 
 def _stays(graph: Blocks, edge: Edge, start: int) -> bool:

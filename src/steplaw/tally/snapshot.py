@@ -43,15 +43,15 @@ class Snapshot:
             places = running.get(probed)
             if places or probed.left or any(passes):
                 left = dict(probed.left)
-                for offset in places or ():
-                    left[offset] = left.get(offset, 0) + 1
-                    self._look_for_loops(probed, offset)
+                for unit in places or ():
+                    left[unit] = left.get(unit, 0) + 1
+                    self._look_for_loops(probed, unit)
                 self.readings[probed] = (passes, left)
 
-    def _look_for_loops(self, probed: Probed, offset: int) -> None:
+    def _look_for_loops(self, probed: Probed, unit: int) -> None:
         """Note the loops whose passes are known only at their end and that are under way."""
         d = probed.graph.decoded
-        block = probed.graph.of[probed.origins[offset >> 1]]
+        block = probed.graph.of[probed.origins[unit]]
         for loop in probed.counted:
             if block in loop.body:
                 line = d.lines[probed.graph.blocks[loop.head].first]
@@ -68,7 +68,7 @@ def _running_frames(registry: Registry) -> dict[Probed, list[int]]:
         while frame is not None:
             probed = registry.find(frame.f_code)
             if probed is not None:
-                running.setdefault(probed, []).append(frame.f_lasti)
+                running.setdefault(probed, []).append(frame.f_lasti >> 1)
             frame = frame.f_back
     return running
 
@@ -118,9 +118,9 @@ class CodeCounts:
     def _exits(self, before: dict[int, int], after: dict[int, int]) -> dict[int, int]:
         origins, ops = self.probed.origins, self.probed.graph.decoded.ops
         exits: dict[int, int] = {}
-        for offsets, sign in ((after, 1), (before, -1)):
-            for offset, n in offsets.items():
-                k = origins[offset >> 1]
+        for units, sign in ((after, 1), (before, -1)):
+            for unit, n in units.items():
+                k = origins[unit]
                 if k < 0:
                     raise CountMismatch(f"{self.probed.original!r}: left inside a probe")
                 left = _left_at(ops, k)

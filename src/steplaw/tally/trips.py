@@ -15,8 +15,8 @@ if TYPE_CHECKING:
     from steplaw.tally.writer import Writer
 
 _OP = isa.OPMAP
-_ADD, _SUBTRACT = 0, 10  # the arguments of BINARY_OP (CPython's opcode.h, NB_ADD, NB_SUBTRACT)
-_FALSE_JUMP = _OP.get("POP_JUMP_IF_FALSE", _OP.get("POP_JUMP_FORWARD_IF_FALSE", -1))
+ADD, _SUBTRACT = 0, 10  # the arguments of BINARY_OP (CPython's opcode.h, NB_ADD, NB_SUBTRACT)
+FALSE_JUMP = _OP.get("POP_JUMP_IF_FALSE", _OP.get("POP_JUMP_FORWARD_IF_FALSE", -1))
 NAME = "n"
 
 
@@ -75,14 +75,14 @@ class TripWriter:
         emit(_OP["COPY"], arguments + (2 if isa.VERSION >= (3, 13) else 1), cover=cover)
         emit(_OP["LOAD_CONST"], self._range, cover=cover)
         emit(_OP["IS_OP"], 0, cover=cover)
-        emit(_FALSE_JUMP, jump=self._slow, cover=cover)
+        emit(FALSE_JUMP, jump=self._slow, cover=cover)
 
     def entered(self, cover: Cover | None) -> None:
         """Write, behind the call, what adds the length of the range on top of the stack."""
         below = self.loop.depth - 1 + self._writer.base
         self._out.emit(_OP["GET_LEN"], cover=(self._long, below + 1, False))
         self._load(cover)
-        self._out.emit(_OP["BINARY_OP"], _ADD, cover=cover)
+        self._out.emit(_OP["BINARY_OP"], ADD, cover=cover)
         self._store(cover)
 
     def late(self, origin_cover: Cover | None) -> None:

@@ -1,16 +1,15 @@
 """The instructions of one code object, written anew with its probes and recorders.
 
 Fresh exceptions leave a block in its middle. A recorder at each handler, and one more table entry
-around the whole body, keep the instruction that was left (`tb_lasti`) in a dictionary; it runs in
-C alone and costs nothing while nothing is raised.
+around the whole body, keep the instruction that was left in a dictionary: the interpreter pushes
+its place where the table asks for it. A recorder makes no call, so that nothing comes between, and
+costs nothing while nothing is raised.
 """
 
 from __future__ import annotations
 
-from collections import _count_elements  # type: ignore[attr-defined]
 from collections.abc import Iterable, Mapping
-from functools import partial
-from operator import attrgetter
+from itertools import repeat
 
 from steplaw.flow import isa
 from steplaw.flow.blocks import Blocks
@@ -18,11 +17,9 @@ from steplaw.flow.ranges import RangeLoop
 from steplaw.tally.assemble import Assembly, Cover
 from steplaw.tally.fused import unsafe_pairs
 from steplaw.tally.placement import Unplaceable
-from steplaw.tally.trips import Trips, TripWriter
+from steplaw.tally.trips import ADD, FALSE_JUMP, Trips, TripWriter
 from steplaw.tally.watching import Watching
 
-_LASTI = attrgetter("tb_lasti")
-_TRACEBACK = BaseException.__dict__["__traceback__"].__get__
 _OP = isa.OPMAP
 #: What takes a probe's iterator and item off the stack: END_FOR of 3.12 takes both.
 _DROP = (isa.END_FOR,) if isa.VERSION == (3, 12) else (_OP["POP_TOP"], _OP["POP_TOP"])
@@ -53,7 +50,7 @@ class Writer:
     counted : iterable of (RangeLoop, Trips)
         Loops whose trip count takes the place of a probe.
     left : dict
-        Where recorders keep the places of fresh exceptions.
+        Where recorders count the code units that fresh exceptions left from.
     watched : bool
         Whether operands are looked at, for the native ledger.
 
@@ -90,8 +87,9 @@ class Writer:
         self._first_resume = self.decoded.ops.index(isa.RESUME)
         self._start = graph.of[self._first_resume]
         self._apart = unsafe_pairs(graph)
-        self._recorder_consts = (partial(_count_elements, left), _LASTI, _TRACEBACK)
-        self._recorder_places: list[int] = []
+        self._left = self.const(repeat(left))
+        self._numbers = self.const(0), self.const(1)
+        self._firsts: list[tuple[int, int]] = []
         loops = list(counted)
         whole = {loop.edge for loop, _ in loops}
         self._probe_const = {n: self.const(it) for n, it in probes.items() if n not in whole}
@@ -189,7 +187,7 @@ class Writer:
         if handler is not None:
             block = self.graph.of[handler.target]
             label = block if quiet else len(self.graph.blocks) + block
-            target = label, handler.depth + self.base, handler.lasti
+            target = label, handler.depth + self.base, handler.lasti or not quiet
         elif quiet or k < self._first_resume:
             block, target = -1, None
         else:
@@ -208,8 +206,7 @@ class Writer:
                 if self._falls_into(b):
                     self._late.append(b)
                 else:
-                    self.out.mark(n + b)
-                    self._recorder()
+                    self._record_for(b)
             if b in self._landings:
                 if self._falls_into(b):
                     raise Unplaceable("a block falls into the target of SEND")
@@ -228,12 +225,13 @@ class Writer:
         for writer in sorted(self._loops, key=lambda w: len(w.loop.body)):
             writer.late(self._cover(writer.loop.call))
         for b in self._late:
-            self.out.mark(n + b)
-            self._recorder()
+            self._record_for(b)
             self.out.emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=b)
         self.out.mark(self._outer_label)
         self._recorder()
         self.out.emit(_OP["RERAISE"], 1)
+        for first, again in self._firsts:
+            self._first_time(first, again)
         self.out.layout()
         return self.out
 
@@ -324,19 +322,49 @@ class Writer:
         else:
             self.out.emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=target)
 
+    def _record_for(self, b: int) -> None:
+        """Write the recorder before a handler, which finds the stack as it expects it."""
+        self.out.mark(len(self.graph.blocks) + b)
+        self._recorder()
+        if not self._handlers[self.graph.blocks[b].first].lasti:
+            self.out.emit(_OP["SWAP"], 2)
+            self.out.emit(_OP["POP_TOP"])
+
     def _recorder(self) -> None:
-        """Write what keeps the place of a fresh exception, the exception on top of the stack."""
-        if not self._recorder_places:
-            self._recorder_places = [self.const(value) for value in self._recorder_consts]
-        emit = self.out.emit
-        for place in self._recorder_places:
-            self.push(place)
-        emit(_OP["COPY"], 7)
-        self.call(1)
-        self.call(1)
-        emit(_OP["BUILD_TUPLE"], 1)
-        self.call(1)
+        """Write what counts the place that lies below the exception on top of the stack.
+
+        The dictionary comes out of an iterator, since a constant must have a hash. A place that
+        is not in it yet is put there out of line: nothing is called.
+        """
+        emit, first, again = self.out.emit, self.label(), self.label()
+        self._firsts.append((first, again))
+        emit(_OP["LOAD_CONST"], self._left)
+        emit(isa.FOR_ITER)
+        emit(_OP["SWAP"], 2)
         emit(_OP["POP_TOP"])
+        emit(_OP["COPY"], 3)
+        emit(_OP["COPY"], 2)
+        emit(_OP["CONTAINS_OP"])
+        emit(FALSE_JUMP, jump=first)
+        self.out.mark(again)
+        emit(_OP["COPY"], 1)
+        emit(_OP["COPY"], 4)
+        emit(_OP["BINARY_SUBSCR"])
+        emit(_OP["LOAD_CONST"], self._numbers[1])
+        emit(_OP["BINARY_OP"], ADD)
+        emit(_OP["SWAP"], 2)
+        emit(_OP["COPY"], 4)
+        emit(_OP["STORE_SUBSCR"])
+
+    def _first_time(self, label: int, again: int) -> None:
+        """Write what puts a place into the dictionary on top of the stack."""
+        emit = self.out.emit
+        self.out.mark(label)
+        emit(_OP["LOAD_CONST"], self._numbers[0])
+        emit(_OP["COPY"], 2)
+        emit(_OP["COPY"], 5)
+        emit(_OP["STORE_SUBSCR"])
+        emit(_OP["JUMP_BACKWARD_NO_INTERRUPT"], jump=again)
 
     def push(self, place: int) -> None:
         """Write what puts a constant on the stack to be called."""
