@@ -125,6 +125,16 @@ class Blocks:
             if op == isa.SEND and isa.THROW_JUMPS_SEND and d.ops[k + 1] == isa.YIELD_VALUE:
                 add(OUTSIDE, self.of[d.targets[k]], "land")
 
+    def inflow(self) -> list[int]:
+        """Give the number of ways into each block, its handlers' work included."""
+        ways = [0] * len(self.blocks)
+        for edge in self.edges:
+            if edge.target >= 0:
+                ways[edge.target] += 1
+        for target in {h.target for h in self.decoded.handlers if h is not None}:
+            ways[self.of[target]] += 1
+        return ways
+
     def _add(self, source: int, target: int, kind: str) -> None:
         self.edges.append(Edge(source, target, kind))
 

@@ -8,7 +8,11 @@ from steplaw.flow import isa
 from steplaw.flow.blocks import OUTSIDE, Blocks
 from steplaw.flow.effects import begins, depths, takes_and_gives
 
-_LOAD_GLOBAL, _CALL, _GET_ITER = (isa.OPMAP[n] for n in ("LOAD_GLOBAL", "CALL", "GET_ITER"))
+_LOAD_GLOBAL, _LOAD_CONST, _CALL, _GET_ITER = (
+    isa.OPMAP[name] for name in ("LOAD_GLOBAL", "LOAD_CONST", "CALL", "GET_ITER")
+)
+#: Longest range of constants whose length is taken for its passes.
+_LONGEST = 1 << 40
 
 
 #: What instructions of handlers take from the stack and give to it.
@@ -39,8 +43,12 @@ class RangeLoop:
         The instruction that begins the call of `range` (PRECALL on 3.11, otherwise CALL).
     depth : int
         Stack depth in the loop, its iterator included.
-    edge : int
-        The edge from FOR_ITER into the loop.
+    edge, entry : int
+        The edges from FOR_ITER into the loop and from outside to FOR_ITER.
+    load : int
+        The instruction that loads `range`.
+    constant : range or None
+        What is called for, where all its arguments are constants.
     """
 
     head: int
@@ -48,6 +56,9 @@ class RangeLoop:
     call: int
     depth: int
     edge: int
+    entry: int
+    load: int
+    constant: range | None
 
     @property
     def iterator(self) -> int:
@@ -71,17 +82,17 @@ def range_loops(graph: Blocks) -> list[RangeLoop]:
     if "range" not in graph.decoded.code.co_names:
         return []
     heads = [
-        (b, call)
+        (b, found)
         for b, block in enumerate(graph.blocks)
         if graph.decoded.ops[block.last] == isa.FOR_ITER and block.first == block.last
-        for call in [_range_call(graph, b)]
-        if call is not None
+        for found in [_range_call(graph, b)]
+        if found is not None
     ]
     if not heads:
         return []
     depth, reached = depths(graph), _reached(graph)
     loops = []
-    for head, call in heads:
+    for head, (load, call) in heads:
         level = depth[head]
         body = None if level is None else _body(graph, head, depth, level, reached)
         if body is None or level is None or not _closed(graph, head, body, reached):
@@ -89,12 +100,16 @@ def range_loops(graph: Blocks) -> list[RangeLoop]:
         if not _lets_go(graph, body, level):
             continue
         edge = next(n for n, e in enumerate(graph.edges) if e.source == head and e.kind == "fall")
-        loops.append(RangeLoop(head, body, call, level, edge))
+        entry = next(
+            n for n, e in enumerate(graph.edges) if e.target == head and e.source == head - 1
+        )
+        constant = _constant(graph, load, call)
+        loops.append(RangeLoop(head, body, call, level, edge, entry, load, constant))
     return loops
 
 
-def _range_call(graph: Blocks, head: int) -> int | None:
-    """Give the instruction that begins the call of `range` right before a loop, if it is one."""
+def _range_call(graph: Blocks, head: int) -> tuple[int, int] | None:
+    """Give what loads `range` right before a loop and what begins its call, if it is one."""
     d = graph.decoded
     get_iter = graph.blocks[head].first - 1
     call = get_iter - 1
@@ -109,8 +124,21 @@ def _range_call(graph: Blocks, head: int) -> int | None:
     load = first - 1
     named = d.ops[load] == _LOAD_GLOBAL and d.args[load] & 1
     if named and d.code.co_names[d.args[load] >> 1] == "range":
-        return start
+        return load, start
     return None
+
+
+def _constant(graph: Blocks, load: int, call: int) -> range | None:
+    """Give the range that is called for, None if it is not the same each time."""
+    d = graph.decoded
+    given = [d.code.co_consts[d.args[k]] for k in range(load + 1, call) if d.ops[k] == _LOAD_CONST]
+    if len(given) != call - load - 1 or any(type(value) is not int for value in given):
+        return None
+    try:
+        made = range(*given)
+        return made if 0 <= len(made) <= _LONGEST else None
+    except (TypeError, ValueError, OverflowError):
+        return None
 
 
 def _body(

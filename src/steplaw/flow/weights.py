@@ -1,4 +1,8 @@
-"""How often each edge is likely to be passed, guessed from the shape of the code."""
+"""How often each edge is likely to be passed, guessed from the shape of the code.
+
+Which way a branch is likely to go follows the rules of Ball & Larus (Branch prediction for free,
+PLDI 1993); the odds are our own.
+"""
 
 from __future__ import annotations
 
@@ -7,6 +11,15 @@ from steplaw.flow.blocks import OUTSIDE, Blocks
 
 LOOP = 10.0
 COLD = 0.02
+#: Odds that a test for equality fails, that a value is not None, and that what is awaited is
+#: ready at once.
+UNEQUAL, NOT_NONE, READY = 0.7, 0.6, 0.9
+
+_COMPARE, _TO_BOOL = isa.OPMAP["COMPARE_OP"], isa.OPMAP.get("TO_BOOL", -1)
+_AWAITS = frozenset(isa.OPMAP[name] for name in ("GET_AWAITABLE", "GET_ANEXT"))
+#: COMPARE_OP keeps the comparison above some bits (CPython's opcode.h).
+_SHIFT = {(3, 11): 0, (3, 12): 4}.get(isa.VERSION, 5)
+_EQUAL, _NOT_EQUAL = 2, 3
 
 
 def edge_weights(graph: Blocks) -> list[float]:
@@ -30,25 +43,71 @@ def edge_weights(graph: Blocks) -> list[float]:
     weights = [COLD * COLD] * len(edges)
     leaving: list[list[int]] = [[] for _ in graph.blocks]
     flow = [0.0] * len(graph.blocks)
+    begun = graph.of[ops.index(isa.RESUME)]
+    resumed: dict[int, int] = {}
     for number, edge in enumerate(edges):
         if edge.source != OUTSIDE:
             leaving[edge.source].append(number)
+        elif edge.kind == "enter" and edge.target == begun:
+            weights[number] = flow[begun] = 1.0
         elif edge.kind == "enter":
-            weights[number] = 1.0
-            flow[edge.target] += 1.0
+            resumed[edge.target] = number
     for handler in {h.target for h in graph.decoded.handlers if h is not None}:
         flow[graph.of[handler]] += COLD
     for b, numbers in enumerate(leaving):
-        if b in tails:
+        if b in tails and not _awaits(graph, b):
             flow[b] *= LOOP
-        shares = [_share(edges[n].target, b, tails, raising) for n in numbers]
+        jumps = _jumps(graph, b)
+        shares = [
+            _share(edges[n].target, b, tails, raising)
+            * (jumps if edges[n].kind == "branch" else 1 - jumps)
+            for n in numbers
+        ]
         whole = sum(shares) or 1.0
         for number, share in zip(numbers, shares, strict=True):
             weights[number] = flow[b] * share / whole
             target = edges[number].target
             if target > b:
                 flow[target] += weights[number]
+            elif (
+                target == OUTSIDE
+                and b + 1 in resumed
+                and ops[graph.blocks[b].last] == isa.YIELD_VALUE
+            ):
+                weights[resumed[b + 1]] = weights[number]
+                flow[b + 1] += weights[number]
     return weights
+
+
+def _jumps(graph: Blocks, b: int) -> float:
+    """Give the odds that the jump at the end of a block is made."""
+    d, k = graph.decoded, graph.blocks[b].last
+    name = isa.OPNAME[d.ops[k]]
+    if d.ops[k] == isa.SEND:
+        # The other way out of a loop has the small share already.
+        return LOOP * READY / (LOOP * READY + 1 - READY) if _awaits(graph, b) else 0.5
+    if "_IF_" not in name:
+        return 0.5
+    if name.endswith("NONE"):
+        return NOT_NONE if "NOT" in name else 1 - NOT_NONE
+    holds = _holds(graph, k)
+    return holds if name.endswith("IF_TRUE") else 1 - holds
+
+
+def _awaits(graph: Blocks, b: int) -> bool:
+    """Whether a block asks an awaited object for its next value."""
+    ops, k = graph.decoded.ops, graph.blocks[b].last
+    return ops[k] == isa.SEND and k > 1 and ops[k - 2] in _AWAITS
+
+
+def _holds(graph: Blocks, jump: int) -> float:
+    """Give the odds that what a jump tests is true."""
+    d, k = graph.decoded, jump - 1
+    if k > 0 and d.ops[k] == _TO_BOOL:
+        k -= 1
+    if k < 0 or d.ops[k] != _COMPARE:
+        return 0.5
+    return {_EQUAL: 1 - UNEQUAL, _NOT_EQUAL: UNEQUAL}.get(d.args[k] >> _SHIFT, 0.5)
 
 
 def _loop_tails(graph: Blocks) -> dict[int, int]:

@@ -18,6 +18,7 @@ from steplaw.flow.blocks import Blocks, Edge
 from steplaw.flow.decode import Decoded
 from steplaw.flow.ranges import RangeLoop, range_loops
 from steplaw.flow.weights import edge_weights
+from steplaw.tally.lengths import Lengths
 from steplaw.tally.placement import Placement
 from steplaw.tally.trips import Trips
 from steplaw.tally.writer import Writer, returns_constant
@@ -28,9 +29,10 @@ FULL = sys.maxsize
 _PROBE_STACK, _HANDLER_STACK, _TRIPS_STACK = 2, 5, 5
 #: Stack of the recorder around the body: place and exception, four pushed.
 _RECORDER_STACK = 6
-#: Cost of a probe that is left on the stack, and of a loop's trip count at its entry,
-#: beside a probe that clears up behind itself.
-_CALL_COST, _TRIPS_COST = 0.5, 2.5
+#: Cost of a probe that is left on the stack, of one out of line, and of a loop's trip count at
+#: its entry, also where the range is made already, beside a probe in line that clears up behind
+#: itself.
+_CALL_COST, _STUB_COST, _TRIPS_COST, _READY_COST = 0.8, 1.3, 2.5, 0.1
 
 
 class Probed:
@@ -48,6 +50,8 @@ class Probed:
         The probes, in the order of ``placement.probed``.
     counted : list of RangeLoop
         Loops whose passes are known from their entry.
+    lengths : Lengths
+        Those of them that run over a range of constants.
     trips : dict of int to Trips
         Trip counts that stand for a probe, by place in that order.
     left : dict of int to int
@@ -62,6 +66,7 @@ class Probed:
         "graph",
         "iterators",
         "left",
+        "lengths",
         "original",
         "origins",
         "placement",
@@ -78,8 +83,10 @@ class Probed:
         probed = self.placement.probed
         self.left: dict[int, int] = {}
         self.iterators = [repeat(None, FULL) for _ in probed]
-        self.counted = [loops[number] for number in probed if number in loops]
-        self.trips = {place: Trips() for place, number in enumerate(probed) if number in loops}
+        by_place = {place: loops[number] for place, number in enumerate(probed) if number in loops}
+        self.counted = list(by_place.values())
+        self.lengths = Lengths(self.placement, by_place)
+        self.trips = {place: Trips(self.lengths.length(place)) for place in by_place}
         probes = dict(zip(probed, self.iterators, strict=True))
         counted = [(loops[probed[place]], trips) for place, trips in self.trips.items()]
         writer = Writer(graph, consts, probes, counted, self.left, watched)
@@ -95,7 +102,7 @@ class Probed:
         )
 
     def passes(self) -> list[int]:
-        """Give the passes of every probe so far."""
+        """Give the passes of every probe so far, those of `lengths` without their entries' share."""
         passes = [FULL - length_hint(it) for it in self.iterators]
         for place, trips in self.trips.items():
             passes[place] = trips.passes()
@@ -124,15 +131,22 @@ def _stays(graph: Blocks, edge: Edge, start: int) -> bool:
     return edge.kind == "leave" and returns_constant(graph, edge.source) is not None
 
 
+def _cost(graph: Blocks, edge: Edge, start: int, inflow: list[int]) -> float:
+    if _stays(graph, edge, start):
+        return _CALL_COST
+    return _STUB_COST if edge.kind == "branch" and inflow[edge.target] > 1 else 1.0
+
+
 def _costs(graph: Blocks, loops: dict[int, RangeLoop]) -> list[float]:
     """Give the likely cost of counting every edge: how often, by how dear each time."""
     weights = edge_weights(graph)
     start = graph.of[graph.decoded.ops.index(isa.RESUME)]
+    inflow = graph.inflow()
     costs = [
-        weight * (_CALL_COST if _stays(graph, edge, start) else 1.0)
+        weight * _cost(graph, edge, start, inflow)
         for edge, weight in zip(graph.edges, weights, strict=True)
     ]
     for number, loop in loops.items():
-        entry = next(n for n, e in enumerate(graph.edges) if e.target == loop.head)
-        costs[number] = min(costs[number], weights[entry] * _TRIPS_COST)
+        each = _TRIPS_COST if loop.constant is None else _READY_COST
+        costs[number] = min(costs[number], weights[loop.entry] * each)
     return costs

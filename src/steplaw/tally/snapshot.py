@@ -111,7 +111,7 @@ class CodeCounts:
                 b = graph.of[d.targets[k] if d.ops[k] in isa.CHECKED_JUMPS else k]
                 net[b] = net.get(b, 0) - n
         self.passes = probed.probe_passes(passes)
-        self.edges, self.entered = probed.placement.solve(passes, net)
+        self.edges, self.entered = probed.lengths.solve(passes, net)
         self.instructions = self._instructions(exits)
         self.calls = self._calls()
 

@@ -97,8 +97,12 @@ class Writer:
         self._place()
         self.base = 0 if self._at_start is None else 2
         self._loops = [TripWriter(loop, trips, self) for loop, trips in loops]
-        self._calls = {writer.loop.call: writer for writer in self._loops}
-        self._iterators = {writer.loop.iterator: writer for writer in self._loops}
+        self._calls = {w.loop.call: w for w in self._loops if not w.whole}
+        self._iterators = {w.loop.iterator: w for w in self._loops if not w.whole}
+        self._ready = {w.loop.load: w for w in self._loops if w.whole}
+        self._unwritten = {
+            k for w in self._ready.values() for k in range(w.loop.load, w.loop.iterator)
+        }
         self._inside = self._loops_by_block()
         self._jumped_back_to = {
             graph.of[target]
@@ -110,8 +114,13 @@ class Writer:
     @property
     def range_calls(self) -> set[int]:
         """The instructions that call `range` for a loop whose passes are known from it."""
-        loops = [writer.loop for writer in self._loops]
-        return {k for loop in loops for k in range(loop.call, loop.iterator)}
+        return {
+            k
+            for writer in self._loops
+            for k in range(
+                writer.loop.load if writer.whole else writer.loop.call, writer.loop.iterator
+            )
+        }
 
     def const(self, value: object) -> int:
         """Add a constant and give its number."""
@@ -140,12 +149,7 @@ class Writer:
     def _place(self) -> None:
         """Sort the probed edges by the place where their probe goes."""
         n = len(self.graph.blocks)
-        inflow = [0] * n
-        for edge in self.graph.edges:
-            if edge.target >= 0:
-                inflow[edge.target] += 1
-        for target in self._handlers:
-            inflow[self.graph.of[target]] += 1
+        inflow = self.graph.inflow()
         self._head: list[list[int]] = [[] for _ in range(n)]
         self._tail: list[list[int]] = [[] for _ in range(n)]
         self._after: list[list[int]] = [[] for _ in range(n)]
@@ -253,6 +257,10 @@ class Writer:
                 self._probes(self._tail[b], cover)
             if k in self._returns:
                 self._leave_behind(self._returns[k], cover)
+            if k in self._ready:
+                self._ready[k].ready(cover)
+            if k in self._unwritten:
+                continue
             if k in self._calls:
                 self._calls[k].guard(cover)
             if d.ops[k] == isa.YIELD_VALUE and k and d.ops[k - 1] == isa.SEND:
@@ -278,7 +286,11 @@ class Writer:
         if head > block.last:
             self._enter(b)
             self._probes(self._head[b], self._cover(block.last))
-        self._probes(self._after[b], self._cover(block.last))
+        self.fall_from(b)
+
+    def fall_from(self, b: int) -> None:
+        """Write the probes between a block and the next."""
+        self._probes(self._after[b], self._cover(self.graph.blocks[b].last))
 
     def _landing(self, send: int) -> None:
         """Write, right before YIELD_VALUE, the distance that 3.11 moves a frame on by a throw."""
@@ -301,11 +313,14 @@ class Writer:
             self._probe(number, cover)
 
     def _probe(self, number: int, cover: Cover | None) -> None:
-        out = self.out
-        out.emit(_OP["LOAD_CONST"], self._probe_const[number], cover=cover)
-        out.emit(isa.FOR_ITER, 0, cover=cover)
+        self.pass_probe(self._probe_const[number], cover)
+
+    def pass_probe(self, place: int, cover: Cover | None = None) -> None:
+        """Write a probe whose iterator is a constant."""
+        self.out.emit(_OP["LOAD_CONST"], place, cover=cover)
+        self.out.emit(isa.FOR_ITER, 0, cover=cover)
         for op in _DROP:
-            out.emit(op, cover=cover)
+            self.out.emit(op, cover=cover)
 
     def _stub(self, label: int, number: int, source: int) -> None:
         """Write a probe out of line, for a jump to a block that others reach as well."""
@@ -375,8 +390,8 @@ class Writer:
             self.out.emit(_OP["PUSH_NULL"])
             self.out.emit(_OP["LOAD_CONST"], place)
 
-    def call(self, arguments: int) -> None:
+    def call(self, arguments: int, origin: int = -1, cover: Cover | None = None) -> None:
         """Write a call."""
         if isa.PRECALL >= 0:
-            self.out.emit(isa.PRECALL, arguments)
-        self.out.emit(_OP["CALL"], arguments)
+            self.out.emit(isa.PRECALL, arguments, origin=origin, cover=cover)
+        self.out.emit(_OP["CALL"], arguments, origin=origin, cover=cover)
