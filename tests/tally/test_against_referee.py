@@ -13,7 +13,6 @@ from __future__ import annotations
 import contextlib
 import importlib.util
 import os
-import sys
 from collections.abc import Callable, Iterator
 from pathlib import Path
 

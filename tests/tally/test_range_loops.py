@@ -1,4 +1,4 @@
-"""Loops over `range`, of constants above all, in every way in and out of them, against the referee."""
+"""Loops over `range`, of constants above all: every way in and out of them, by the referee."""
 
 from __future__ import annotations
 
@@ -20,7 +20,14 @@ from steplaw.tally.registry import Registry
 pytestmark = pytest.mark.skipif(not hasattr(os, "fork"), reason="each program runs in a fork")
 
 SHARE = int(os.environ.get("STEPLAW_PROGRAMS", "60"))
-RANGES = ("range(4)", "range(0)", "range(1, 8, 3)", "range(6, -3, -2)", "range(n)", "range(1, n + 1)")
+RANGES = (
+    "range(4)",
+    "range(0)",
+    "range(1, 8, 3)",
+    "range(6, -3, -2)",
+    "range(n)",
+    "range(1, n + 1)",
+)
 #: What `range` is in the program: itself, or something that is called in its place.
 OTHERS = (
     "",
@@ -37,9 +44,15 @@ OTHERS = (
 @st.composite
 def statements(draw: st.DrawFn, depth: int, loop: int) -> list[str]:
     """Lines of code, some with loops over a range, some of which may raise."""
-    kinds = ["add", "divide", "catch", "choose", "loop", "loop", "while"] if depth else ["add", "divide"]
+    kinds = (
+        ["add", "divide", "catch", "choose", "loop", "loop", "while"]
+        if depth
+        else ["add", "divide"]
+    )
     if loop:
-        kinds += ["continue", "raise"] + (["break", "return"] if draw(st.integers(0, 4)) == 0 else [])
+        kinds += ["continue", "raise"] + (
+            ["break", "return"] if draw(st.integers(0, 4)) == 0 else []
+        )
     lines: list[str] = []
     for _ in range(draw(st.integers(1, 2))):
         kind = draw(st.sampled_from(kinds))
@@ -50,7 +63,11 @@ def statements(draw: st.DrawFn, depth: int, loop: int) -> list[str]:
             case "divide":
                 lines.append(f"t += 12 // (t % {draw(st.integers(2, 5))} - 1)")
             case "catch":
-                after = draw(st.sampled_from(["except ZeroDivisionError:", "except Full as full:", "finally:"]))
+                after = draw(
+                    st.sampled_from(
+                        ["except ZeroDivisionError:", "except Full as full:", "finally:"]
+                    )
+                )
                 lines += ["try:", *inner, after, "    t += 2"]
             case "choose":
                 lines += [f"if t % {draw(st.integers(2, 4))}:", *inner]

@@ -102,7 +102,7 @@ class Probed:
         )
 
     def passes(self) -> list[int]:
-        """Give the passes of every probe so far, those of `lengths` without their entries' share."""
+        """Give the passes of every probe so far; of `lengths`, without their entries' share."""
         passes = [FULL - length_hint(it) for it in self.iterators]
         for place, trips in self.trips.items():
             passes[place] = trips.passes()

@@ -204,7 +204,6 @@ class Writer:
     def write(self) -> Assembly:
         """Write all of it and settle its layout."""
         graph = self.graph
-        n = len(graph.blocks)
         for b, block in enumerate(graph.blocks):
             if block.first in self._handlers:
                 if self._falls_into(b):
