@@ -127,6 +127,9 @@ class TripWriter:
             out.emit(_OP["PUSH_NULL"], cover=origin_cover)
             if isa.VERSION < (3, 13):
                 out.emit(_OP["SWAP"], 2, cover=origin_cover)
+        else:
+            # 3.13 looks up what a Python function raises by the code unit before its call.
+            out.emit(_OP["NOP"], cover=origin_cover)
         for k in range(self.loop.load + 1 if self.whole else self.loop.call, self.loop.iterator):
             out.emit(d.ops[k], d.args[k], origin=k, cover=origin_cover)
         self._wrap(origin_cover)
