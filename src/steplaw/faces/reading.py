@@ -220,7 +220,7 @@ def evidence(law: Json, names: Sequence[str], unicode: bool = True) -> list[tupl
         out.append(("error", f"at most {100 * law['error']:.2g} % at the sizes checked"))
     intervals = _intervals(law, unicode)
     if intervals:
-        out.append(("95 % between", intervals))
+        out.append(("intervals", intervals))
     if law.get("note"):
         out.append(("note", clean(law["note"], unicode)))
     return out
@@ -233,7 +233,7 @@ def _intervals(law: Json, unicode: bool) -> str:
         low, high = (_minus(f"{term[key]:.4g}", unicode) for key in ("low", "high"))
         name = "the constant" if term["term"] == "1" else pretty(term["term"], unicode)
         out.append(f"{name}: {low} to {high}")
-    return "; ".join(out)
+    return f"{'; '.join(out)} (95 %)" if out else ""
 
 
 def _minus(text: str, unicode: bool) -> str:
