@@ -48,7 +48,12 @@ _TYPES = "m.types_map_inv[{}].__setitem__('cargo/list', [f'.{}{{k}}' for k in ra
 
 CALLS = [
     NativeCall(
-        "statistics:median", "[rng.random() for _ in range(n)]", "64..8192", "1", "n*log(n)", "sort"
+        "statistics:median",
+        "[rng.random() for _ in range(n)]",
+        "1024..65536",
+        "1",
+        "n*log(n)",
+        "sort",
     ),
     NativeCall(
         "statistics:mode", "[rng.randrange(9) for _ in range(n)]", "256..16384", "1", "n", "tally"
