@@ -23,6 +23,7 @@ import click
 import pytest
 
 from steplaw.commands import COMMANDS, run, steplaw
+from steplaw.review.configuration import read
 from steplaw.study import make_study
 
 ROOT = Path(__file__).parents[1]
@@ -108,8 +109,16 @@ def test_commands_parse(page: str, text: str, monkeypatch: pytest.MonkeyPatch) -
     _, name, *words = shlex.split(re.sub(r"\s\d?>\s*\S+", "", text))
     command = steplaw.get_command(click.Context(steplaw), name)
     assert command is not None, f"{page}: there is no command {name}"
+    if isinstance(command, click.Group):
+        part = command.get_command(click.Context(command), words.pop(0))
+        assert part is not None, f"{page}: {text}"
+        command = part
     given = command.make_context(name, words).params
-    if name == "audit":
+    if "project" in given and given["project"] != ".":
+        configuration = read(given["project"])
+        for study in given["names"] if "names" in given else (given["subject"],):
+            assert study is None or configuration.study(study)
+    elif name == "audit" and ":" in (given["subject"] or ""):
         taken = ("feed", "every", "only_sizes", "draws", "figure", "clock")
         study = make_study(
             given["subject"], sizes=given["sizes"] or None, **{k: given[k] for k in taken}

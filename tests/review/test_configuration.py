@@ -213,7 +213,7 @@ def test_a_file_without_studies_of_steplaw_says_what_to_write(tmp_path: Path) ->
     file = written(tmp_path, '[project]\nname = "ferry"\n', "pyproject.toml")
     with pytest.raises(CallError, match=r"has no \[tool\.steplaw\]; write \[tool"):
         read(file)
-    with pytest.raises(CallError, match=r"cannot read .*: No such file"):
+    with pytest.raises(CallError, match="no such file or folder: "):
         read(tmp_path / "gone.toml")
     file.write_bytes(b"\xff\xfe")
     with pytest.raises(CallError, match="is not UTF-8"):

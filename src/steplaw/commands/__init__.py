@@ -18,6 +18,7 @@ COMMANDS = {
     "typical": "Find how a figure is spread over its inputs.",
     "life": "Count each operation on one structure, and their mean.",
     "space": "Find what is held at the peak: elements and memory.",
+    "budget": "Keep agreed laws of studies, and hold the code to them.",
     "tally": "Run a program under probes and count its steps.",
     "show": "Show a stored record.",
     "store": "List, prune or export the finished runs that are kept.",

@@ -4,20 +4,19 @@ from __future__ import annotations
 
 import shlex
 import sys
-from collections.abc import Mapping
 from typing import Any
 
 import click
 
-from steplaw.commands.output import deliver, must_be_writable
-from steplaw.errors import CallError, SubjectError
+from steplaw.commands.output import check_outputs, deliver, say_faults
+from steplaw.commands.project import PROJECT
+from steplaw.errors import CallError
 from steplaw.record import Record
 from steplaw.study import make_study
-from steplaw.wording import listing
 
 
 @click.command("audit")
-@click.argument("subject")
+@click.argument("subject", required=False)
 @click.option(
     "--feed",
     metavar="EXPR|FILE.py:FUNCTION",
@@ -63,62 +62,59 @@ from steplaw.wording import listing
     "--processes", type=int, metavar="N", help="Runs made at once; all processors by default."
 )
 @click.option("--cluster", metavar="ADDRESS", help="A Dask scheduler whose workers make the runs.")
+@PROJECT
 @click.option("--json", "json_path", metavar="PATH|-", help="Write the record there.")
 @click.option("--page", "page_path", metavar="PATH", help="Write the sheet as an HTML page.")
 @click.option("--plot", "plot_path", metavar="PATH", help="Write the plots, .svg or .png.")
 def command(
-    subject: str,
+    subject: str | None,
     json_path: str | None,
     page_path: str | None,
     plot_path: str | None,
     sizes: tuple[str, ...],
+    project: str,
     **given: Any,
 ) -> int:
     """Find the law that the step count of SUBJECT follows.
 
-    SUBJECT is path/to/file.py:name, package.module:name, or either with Class.method.
+    SUBJECT is path/to/file.py:name, package.module:name, either with Class.method, or the name of
+    a study in the project's configuration. Without it all studies are audited, and PATH is a
+    folder.
     """
-    study = make_study(subject, sizes=sizes or None, again=again(), **given)
-    _check_outputs(json_path, page_path, plot_path)
+    given["sizes"] = sizes or None
+    paths = (json_path, page_path, plot_path)
+    if subject is None or _names_a_study(subject):
+        from steplaw.commands.studies import audit_studies
+
+        typed = {key: value for key, value in given.items() if _is_typed(key)}
+        return audit_studies(subject, typed, paths, again(), project)
+    if _is_typed("project"):
+        raise CallError("--project is for studies by name", "leave it out beside a function")
+    study = make_study(subject, again=again(), **given)
+    check_outputs(*paths)
     from steplaw.commands.progress import progress
     from steplaw.job import run
 
     with progress() as report:
         record = run(study, report)
-    deliver(record, json_path, page_path, plot_path)
+    deliver(record, *paths)
     return say_what_failed(record, subject)
-
-
-def _check_outputs(json_path: str | None, page_path: str | None, plot_path: str | None) -> None:
-    if plot_path is not None:
-        from steplaw.faces.plot import kind_of
-
-        kind_of(plot_path)
-    must_be_writable(json_path, page_path, plot_path)
 
 
 def say_what_failed(record: Record, subject: str) -> int:
     """Give one line for each thing that did not end well, and the exit status."""
-    status = 0
-    repeatable, stopped = record["repeatable"], record["stopped"]
-    if repeatable is not None and not repeatable["holds"]:
-        places = sorted({(x["file"], x["line"]) for x in repeatable["lines"]})
-        at = f", at {listing(f'{file}:{line}' for file, line in places)}" if places else ""
-        click.echo(f"steplaw: the tally of {subject} changes from run to run{at}", err=True)
-        status = SubjectError.exit_status
-    if stopped is not None:
-        click.echo(f"steplaw: {_told(stopped, subject)}", err=True)
-        is_call = stopped["kind"] == "feed"
-        status = CallError.exit_status if is_call else SubjectError.exit_status
-    return status
+    from steplaw.review.outcomes import faults_of
+
+    return say_faults(*faults_of(record, subject))
 
 
-def _told(stopped: Mapping[str, Any], subject: str) -> str:
-    if stopped["kind"] == "feed":
-        return str(stopped["message"])
-    size = ", ".join(f"{name}={value}" for name, value in stopped["at"].items())
-    who = "the audit" if stopped["kind"] == "interrupted" else subject
-    return f"{who} {stopped['message']} (at {size})"
+def _names_a_study(subject: str) -> bool:
+    return ":" not in subject and "/" not in subject and not subject.endswith(".py")
+
+
+def _is_typed(name: str) -> bool:
+    source = click.get_current_context().get_parameter_source(name)
+    return source is click.core.ParameterSource.COMMANDLINE
 
 
 #: Where the record goes and where the runs are made: no part of what is audited.

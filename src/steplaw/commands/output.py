@@ -4,11 +4,15 @@ from __future__ import annotations
 
 import os
 import sys
+from collections.abc import Sequence
 from pathlib import Path
-from typing import IO
+from typing import IO, TYPE_CHECKING
 
 from steplaw.errors import CallError
 from steplaw.record import Record
+
+if TYPE_CHECKING:
+    from rich.console import Console
 
 
 def deliver(
@@ -51,6 +55,41 @@ def deliver(
         write(plot_path, picture(record, kind_of(plot_path)))
 
 
+def check_outputs(json_path: str | None, page_path: str | None, plot_path: str | None) -> None:
+    """Find out before long work whether its results can be written.
+
+    Parameters
+    ----------
+    json_path, page_path, plot_path : str or None
+        As given.
+
+    Raises
+    ------
+    CallError
+        If one of them cannot.
+    """
+    if plot_path is not None:
+        from steplaw.faces.plot import kind_of
+
+        kind_of(plot_path)
+    must_be_writable(json_path, page_path, plot_path)
+
+
+def say_faults(faults: Sequence[str], status: int) -> int:
+    """Say what did not end well, and give the exit status on.
+
+    Parameters
+    ----------
+    faults : sequence of str
+        One line each.
+    status : int
+        The exit status.
+    """
+    for fault in faults:
+        print(f"steplaw: {fault}", file=sys.stderr)
+    return status
+
+
 def must_be_writable(*paths: str | None) -> None:
     """Find out before long work whether its result can be written.
 
@@ -91,19 +130,12 @@ def show(record: Record, *, error: bool = False) -> None:
     error : bool
         Whether it goes to standard error.
     """
-    from rich.console import Console
-
     from steplaw.faces.terminal import show as show_sheet
     from steplaw.faces.terminal_derive import show_derivation
     from steplaw.faces.terminal_forecast import show_forecast
     from steplaw.faces.terminal_life import show_life, show_space, show_typical
     from steplaw.faces.terminal_tally import show_tally
     from steplaw.faces.terminal_worst import show_worst
-
-    class Screen(Console):
-        def on_broken_pipe(self) -> None:
-            self.quiet = True
-            nobody_reads(self.file)
 
     faces = {
         "steplaw.tally/1": show_tally,
@@ -114,7 +146,25 @@ def show(record: Record, *, error: bool = False) -> None:
         "steplaw.typical/1": show_typical,
         "steplaw.space/1": show_space,
     }
-    faces.get(record["schema"], show_sheet)(record, Screen(stderr=error, highlight=False))
+    faces.get(record["schema"], show_sheet)(record, screen(error=error))
+
+
+def screen(*, error: bool = False) -> Console:
+    """Give the terminal, which stays quiet when nobody reads it any more.
+
+    Parameters
+    ----------
+    error : bool
+        Whether it is standard error.
+    """
+    from rich.console import Console
+
+    class Screen(Console):
+        def on_broken_pipe(self) -> None:
+            self.quiet = True
+            nobody_reads(self.file)
+
+    return Screen(stderr=error, highlight=False)
 
 
 def say(text: str) -> None:

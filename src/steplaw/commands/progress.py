@@ -14,8 +14,13 @@ TELLING, USUAL_RATE = 2_000_000, 2e7
 
 
 @contextmanager
-def progress() -> Iterator[Report | None]:
+def progress(label: str = "") -> Iterator[Report | None]:
     """Show what is being done and the time left; nothing where standard error is no terminal.
+
+    Parameters
+    ----------
+    label : str
+        Stands before what is being done.
 
     Yields
     ------
@@ -37,13 +42,15 @@ def progress() -> Iterator[Report | None]:
     )
     started = time.monotonic()
     with bar:
-        task = bar.add_task("loading the subject", total=None, left="")
+        task = bar.add_task(f"{label}loading the subject", total=None, left="")
 
         def report(what: str, at: Mapping[str, int], done: int, rest: int | None) -> None:
             size = ", ".join(f"{name}={value}" for name, value in at.items())
             text = f"{what} at {size}" if what == "counting" else f"{what} up to {size}"
             total = None if rest is None else max(done + rest, 1)
-            bar.update(task, description=text, completed=done, total=total, left=_left(done, rest))
+            bar.update(
+                task, description=label + text, completed=done, total=total, left=_left(done, rest)
+            )
 
         def _left(done: int, rest: int | None) -> str:
             if not done or not rest:

@@ -76,17 +76,25 @@ class Figure:
         found = value(self.as_law(), dict(size))
         return found if isinstance(found, Fraction) else None
 
+    @property
+    def largest(self) -> tuple[int, ...] | None:
+        """The largest size that the formula was seen at, None where it was seen at none."""
+        seen = [_numbers(e) for key in ("settled_by", "checked_at") for e in self.law[key]]
+        return tuple(max(column) for column in zip(*seen, strict=False)) if seen else None
+
+    @property
+    def least(self) -> tuple[int, ...]:
+        """The size from which on the formula holds."""
+        held = _numbers(self.law.get("holds_from") or 0) or (0,)
+        return held if len(held) == len(self.names) else held * len(self.names)
+
     def _holds_at(self, size: Size) -> bool:
         """Whether a size lies between the sizes at which the formula was seen to hold."""
-        seen = [_numbers(e) for key in ("settled_by", "checked_at") for e in self.law[key]]
-        held = _numbers(self.law.get("holds_from") or 0) or (0,)
-        least = held if len(held) == len(size) else held * len(size)
-        if not seen:
+        largest = self.largest
+        if largest is None or len(largest) != len(size):
             return False
-        largest = [max(column) for column in zip(*seen, strict=False)]
-        return len(largest) == len(size) and all(
-            low <= x <= high for low, (_, x), high in zip(least, size, largest, strict=False)
-        )
+        between = zip(self.least, size, largest, strict=True)
+        return all(low <= x <= high for low, (_, x), high in between)
 
 
 @dataclass(frozen=True, slots=True)
@@ -110,10 +118,16 @@ class Account:
     python: str
     feed: str
 
-    @property
-    def minor(self) -> tuple[str, ...]:
-        """The Python version without its last part, which leaves instructions as they are."""
-        return tuple(self.python.split(".")[:2])
+
+def minor(python: str) -> tuple[str, ...]:
+    """Give a Python version without its last part, which leaves instructions as they are.
+
+    Parameters
+    ----------
+    python : str
+        Such as ``3.11.7``.
+    """
+    return tuple(python.split(".")[:2])
 
 
 def account_of(record: Mapping[str, Any]) -> Account:
@@ -150,28 +164,28 @@ def whole_of(account: Account) -> Figure | None:
     parts = [account.figures[name] for name in (*CLASSES, "native") if name in account.figures]
     if not parts:
         return None
-    common = set.intersection(*(set(part.counts) for part in parts))
-    counts = {size: sum((part.counts[size] for part in parts), Fraction(0)) for size in common}
+    counts = {}
+    for size in sorted({size for part in parts for size in part.counts}):
+        known = [count for part in parts if (count := part.at(size)) is not None]
+        if len(known) == len(parts):
+            counts[size] = sum(known, Fraction(0))
     grades = {part.law["grade"] for part in parts}
     weakest = next(g for g in ("open", "fitted", "exact", "proved") if g in grades)
     formula = None if weakest == "open" else " + ".join(f"({p.formula})" for p in parts)
+    seen = [part.largest for part in parts if part.largest is not None]
     law = {
         "formula": formula,
         "leading": formula,
         "grade": weakest,
-        "holds_from": _latest(parts),
-        "settled_by": [[x for _, x in size] for size in sorted(common)],
-        "checked_at": [],
+        "holds_from": [max(column) for column in zip(*(p.least for p in parts), strict=True)],
+        "settled_by": [],
+        "checked_at": [[min(c) for c in zip(*seen, strict=True)]]
+        if len(seen) == len(parts)
+        else [],
         "error": None,
         "note": "operation classes and native visits added up",
     }
     return Figure(law, counts, parts[0].names)
-
-
-def _latest(parts: list[Figure]) -> list[int]:
-    held = [_numbers(part.law.get("holds_from") or 0) for part in parts]
-    width = len(parts[0].names)
-    return [max(x) for x in zip(*(h if len(h) == width else h * width for h in held), strict=False)]
 
 
 def _means(tallies: Any, name: str, names: tuple[str, ...]) -> dict[Size, Fraction]:

@@ -8,20 +8,26 @@ from contextlib import contextmanager
 from dataclasses import dataclass, field, replace
 from fractions import Fraction
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from steplaw.errors import CallError, SteplawError
-from steplaw.job import Report
-from steplaw.record import AuditRecord
 from steplaw.review.settings import Fault, check, check_name, read_tolerance, sizes_of
 from steplaw.review.tomllines import line_of, lines_of_keys
 from steplaw.study import Study, make_study
 from steplaw.wording import close_to, listing
 
+if TYPE_CHECKING:
+    from steplaw.job import Report
+    from steplaw.record import AuditRecord
+
 OWN_FILE, SHARED_FILE = "steplaw.toml", "pyproject.toml"
 BUDGETS = "steplaw-budgets.toml"
 EXAMPLE = '[tool.steplaw.studies.clashes] and under it subject = "ferry/timetable.py:clashes"'
 _TOP = ("studies", "defaults", "budgets")
+
+
+class NoConfiguration(CallError):
+    """Neither the folder nor one above it has a configuration."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,7 +87,8 @@ class NamedStudy:
         """
         with inside(self.root), self._placed():
             again = f"steplaw audit {self.name}"
-            return make_study(**{"again": again, **self.settings, **more})
+            settings = {**_without_rivals(self.settings, more), **more}
+            return make_study(**{"again": again, **settings})
 
     def audit(self, report: Report | None = None, **more: Any) -> AuditRecord:
         """Audit the study in its folder.
@@ -154,6 +161,7 @@ class Configuration:
         close = close_to(name, names)
         there = f"{_shown(self.file)} has {listing(names)}" if names else f"write {EXAMPLE}"
         hint = f"did you mean {' or '.join(close)}?" if close else there
+        hint += "; a function is written path/to/file.py:name"
         raise CallError(f"{_shown(self.file)} has no study '{name}'", hint)
 
 
@@ -176,6 +184,8 @@ def read(place: str | Path = ".") -> Configuration:
         If there is none, or one line that points at the file, the line and the key of a fault.
     """
     path = Path(place)
+    if not path.exists():
+        raise CallError(f"no such file or folder: {place}", f"give a {SHARED_FILE} or {OWN_FILE}")
     file = (find(path) if path.is_dir() else path).resolve()
     text = _text(file)
     prefix, data = _own_part(file, text)
@@ -208,7 +218,7 @@ def find(folder: str | Path = ".") -> Path:
             )
         if has_own or has_shared:
             return own if has_own else shared
-    raise CallError(
+    raise NoConfiguration(
         f"neither {start} nor a folder above it has [tool.steplaw] in {SHARED_FILE} or {OWN_FILE}",
         f"write {EXAMPLE}",
     )

@@ -7,7 +7,15 @@ from dataclasses import dataclass
 from fractions import Fraction
 from typing import Any
 
-from steplaw.review.account import OF_THE_VERSION, OPERATIONS, Account, Figure, account_of, whole_of
+from steplaw.review.account import (
+    OF_THE_VERSION,
+    OPERATIONS,
+    Account,
+    Figure,
+    account_of,
+    minor,
+    whole_of,
+)
 from steplaw.review.change import (
     BETTER,
     SAME,
@@ -70,6 +78,16 @@ class Verdict:
         """The figure that the verdict rests on."""
         return None if self.decided_by is None else self.decided_by.figure
 
+    @property
+    def about_python(self) -> str | None:
+        """What is compared where the Python versions differ, None where they do not."""
+        if minor(self.python[0]) == minor(self.python[1]):
+            return None
+        return (
+            f"Python was {'.'.join(minor(self.python[0]))} and is {'.'.join(minor(self.python[1]))}"
+            ", with other instructions: operation classes are compared instead of steps"
+        )
+
     def as_json(self) -> dict[str, Any]:
         """Give the verdict as plain JSON values."""
         return {
@@ -78,7 +96,7 @@ class Verdict:
             "figure": self.figure,
             "python": {"before": self.python[0], "after": self.python[1]},
             "changes": [change.as_json() for change in self.changes],
-            "notes": list(self.notes),
+            "notes": [*([self.about_python] if self.about_python else []), *self.notes],
         }
 
 
@@ -118,11 +136,11 @@ def compare_accounts(before: Account, after: Account, tolerance: Fraction) -> Ve
     tolerance : Fraction
         As for `compare`.
     """
-    alike = before.minor == after.minor
+    alike = minor(before.python) == minor(after.python)
     pairs = _of_one_version(before, after) if alike else _of_two_versions(before, after)
     same_inputs = before.feed == after.feed
     changes = tuple(compare_figure(name, a, b, tolerance, same_inputs) for name, a, b in pairs)
-    notes = _notes(before, after, alike)
+    notes = _notes(before, after)
     versions = (before.python, after.python)
     if not changes:
         return Verdict(UNDECIDED, (), None, versions, ("no figure is in both", *notes))
@@ -197,13 +215,8 @@ def _counting(changes: Sequence[Change], whole: str, own: str) -> list[Change]:
     ]
 
 
-def _notes(before: Account, after: Account, alike: bool) -> tuple[str, ...]:
+def _notes(before: Account, after: Account) -> tuple[str, ...]:
     notes = []
-    if not alike:
-        notes.append(
-            f"counted on Python {before.python} before and {after.python} now, which differ in "
-            "their instructions: operation classes are compared instead of steps"
-        )
     if before.feed != after.feed:
         notes.append("the feed is another one than before")
     if before.figure != after.figure:
