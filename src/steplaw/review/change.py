@@ -139,7 +139,7 @@ def order_change(change: Change, order: int, why: str, pairs: list[Pair]) -> Cha
 def _by_formulas(
     change: Change, before: Figure, after: Figure, pairs: list[Pair], tolerance: Fraction
 ) -> Change:
-    order = _order(before, after)
+    order = compare_growth(before, after)
     if order:
         return order_change(change, order, "another order of growth", pairs)
     from steplaw.law.growth import TooHard
@@ -202,7 +202,7 @@ def _by_counts(
 def _by_intervals(change: Change, before: Figure, after: Figure, tolerance: Fraction) -> Change:
     """Judge by the leading coefficients, each with its interval."""
     was, now = _leading_interval(before), _leading_interval(after)
-    if was is None or now is None or _order(before, after):
+    if was is None or now is None or compare_growth(before, after):
         return replace(change, why="laws of this grade do not tell")
     why = f"leading term {now[0] / was[1]:.4g} to {now[1] / was[0]:.4g} times what it was"
     if now[0] > was[1] * (1 + float(tolerance)):
@@ -256,14 +256,25 @@ def _orders(figure: Figure) -> list[str]:
 
 
 def _sign_of(a: str, b: str, before: Figure, after: Figure) -> int:
-    return _order(
+    return compare_growth(
         replace(before, law={**before.law, "formula": a}),
         replace(after, law={**after.law, "formula": b}),
     )
 
 
-def _order(before: Figure, after: Figure) -> int:
-    """Compare orders of growth: as all sizes grow alike, then as each of them grows alone."""
+def compare_growth(before: Figure, after: Figure) -> int:
+    """Compare orders of growth: as all sizes grow alike, then as each of them grows alone.
+
+    Parameters
+    ----------
+    before, after : Figure
+        Both with a formula.
+
+    Returns
+    -------
+    int
+        1 where the second grows faster, -1 where it grows slower, 0 where neither does.
+    """
     together = _order_along(before, after)
     if together or len(before.names) == 1:
         return together
