@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import importlib
+import pkgutil
 import re
 import tomllib
 from importlib.metadata import entry_points
@@ -10,7 +11,17 @@ from pathlib import Path
 
 import pytest
 
+import steplaw
+
 pytest_plugins = ["pytester"]
+
+# After each test `pytester` forgets the modules that it imported. Those of steplaw that stay would
+# then hold other classes than those imported anew, so all of them are imported before.
+for _found in pkgutil.walk_packages(steplaw.__path__, "steplaw."):
+    if not _found.name.endswith("__main__"):
+        importlib.import_module(_found.name)
+for _name in ("numpy", "sympy", "rich.console"):
+    importlib.import_module(_name)
 
 PLUGIN = "steplaw.review.pytest_plugin"
 # Where the package is installed, pytest finds the plugin by itself.
