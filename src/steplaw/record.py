@@ -274,6 +274,22 @@ class ForecastRecord(Record):
         return "\n".join(_printable(row) for row in rows)
 
 
+class VersusRecord(Record):
+    """Two subjects on one feed, a `steplaw.versus/1` record."""
+
+    schema_name = "steplaw.versus/1"
+    schema_file = "versus-1.schema.json"
+
+    def __repr__(self) -> str:
+        a, b = (self["subjects"][k]["name"] for k in "ab")
+        rows = [f"{a} versus {b}, laws of {self['python']}"]
+        for figure, told in self["figures"].items():
+            for c in told["crossings"]:
+                who = {"a": a, "b": b}[c["less"]]
+                rows.append(f"  fewer {figure} from {c['at']} on: {who} ({told['grade']})")
+        return "\n".join(_printable(row) for row in rows)
+
+
 RECORDS: dict[str, type[Record]] = {
     kind.schema_name: kind
     for kind in (
@@ -285,6 +301,7 @@ RECORDS: dict[str, type[Record]] = {
         TypicalRecord,
         SpaceRecord,
         ForecastRecord,
+        VersusRecord,
     )
 }
 

@@ -14,6 +14,7 @@ COMMANDS = {
     "audit": "Find the law that a function's step count follows.",
     "derive": "Work out from the source how often each line runs.",
     "forecast": "Foretell steps and time at sizes that are not run.",
+    "versus": "Compare two subjects: where does one overtake the other?",
     "worst": "Search for the input of a size that costs most.",
     "typical": "Find how a figure is spread over its inputs.",
     "life": "Count each operation on one structure, and their mean.",

@@ -135,12 +135,14 @@ def show(record: Record, *, error: bool = False) -> None:
     from steplaw.faces.terminal_forecast import show_forecast
     from steplaw.faces.terminal_life import show_life, show_space, show_typical
     from steplaw.faces.terminal_tally import show_tally
+    from steplaw.faces.terminal_versus import show_versus
     from steplaw.faces.terminal_worst import show_worst
 
     faces = {
         "steplaw.tally/1": show_tally,
         "steplaw.derive/1": show_derivation,
         "steplaw.forecast/1": show_forecast,
+        "steplaw.versus/1": show_versus,
         "steplaw.worst/1": show_worst,
         "steplaw.life/1": show_life,
         "steplaw.typical/1": show_typical,

@@ -11,6 +11,7 @@ _NAMED = {
     "steplaw.tally/1": "a tally",
     "steplaw.derive/1": "a derivation",
     "steplaw.forecast/1": "a forecast",
+    "steplaw.versus/1": "a comparison",
 }
 KINDS = ("terminal", "page", "markdown", "svg", "json")
 
@@ -52,6 +53,10 @@ def render(record: Mapping[str, Any], as_: str, width: int = 80) -> str:
         from steplaw.faces.markdown_forecast import comment as forecast_comment
 
         return forecast_comment(record)
+    if kind == "steplaw.versus/1" and as_ == "markdown":
+        from steplaw.faces.markdown_versus import comment as versus_comment
+
+        return versus_comment(record)
     if kind != "steplaw.audit/1":
         raise CallError(f"{_NAMED.get(kind, 'this')} has no {as_} face", "give --as terminal")
     if as_ == "page":

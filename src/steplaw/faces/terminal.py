@@ -75,6 +75,10 @@ def text(record: Json, width: int = 80) -> str:
         from steplaw.faces.terminal_tally import show_tally
 
         show_tally(record, console)
+    elif record.get("schema") == "steplaw.versus/1":
+        from steplaw.faces.terminal_versus import show_versus
+
+        show_versus(record, console)
     elif record.get("schema") == "steplaw.forecast/1":
         from steplaw.faces.terminal_forecast import show_forecast
 
