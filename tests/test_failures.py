@@ -64,7 +64,7 @@ def audit(*words: str) -> Ended:
         ([f"{FAILING}:well", *NUMBERS, "--json", "/nowhere/at/all.json"], "cannot write /nowhere"),
         ([f"{FAILING}:well", *NUMBERS, "--page", "/proc/page.html"], "cannot write /proc"),
         ([f"{FAILING}:well", *NUMBERS, "--sise", "4"], "no such option"),
-        ([], "missing argument"),
+        ([], "no function is named"),
     ],
     ids=lambda value: value[:40] if isinstance(value, str) else None,
 )
